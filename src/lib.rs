@@ -18,15 +18,15 @@
 //! - [`cli`]: arguments, progress, exit status.
 
 pub mod arithmetic;
-pub mod fault;
-pub mod unit;
-pub mod study;
-pub mod model;
-pub mod scheme;
-pub mod plan;
-pub mod run;
 pub mod bound;
-pub mod figure;
-pub mod report;
-pub mod record;
 pub mod cli;
+pub mod fault;
+pub mod figure;
+pub mod model;
+pub mod plan;
+pub mod record;
+pub mod report;
+pub mod run;
+pub mod scheme;
+pub mod study;
+pub mod unit;

@@ -3,6 +3,6 @@
 mod outcome;
 
 pub use outcome::{
-    Companion, CriterionOutcome, Curve, Drift, Estimates, ExactError, Grade, Mesh, Outcome, Quantity, Rejections, RowColumn, Rows,
-    RunOutcome, SpectrumPoint, Steps,
+    Companion, CriterionOutcome, Curve, Drift, Estimates, ExactError, Grade, Mesh, Outcome, Quantity,
+    Rejections, RowColumn, Rows, RunOutcome, SpectrumPoint, Steps,
 };

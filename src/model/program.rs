@@ -1,0 +1,1 @@
+//! A graph compiled to a list of instructions over registers.
