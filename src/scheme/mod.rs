@@ -1,5 +1,12 @@
 //! Numerical integration schemes: tableaux and the only code that knows how to advance a state.
 
+mod drawing;
+mod explicit;
+mod list;
+pub mod order;
 mod tableau;
+mod tree;
 
+pub use drawing::{Misdrawn, Slip};
+pub use list::{all, find};
 pub use tableau::{Dense, ExactTableau, Scheme, Tableau};
