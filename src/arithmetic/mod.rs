@@ -5,6 +5,7 @@
 
 pub mod elementary;
 pub mod root;
+pub mod ratio;
 
 /// The larger of two numbers by comparison and selection; the first where they are equal.
 /// A NaN in either gives NaN.

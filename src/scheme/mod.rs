@@ -4,6 +4,13 @@ pub mod control;
 pub mod dense_output;
 pub mod rates;
 pub mod step;
+mod drawing;
+mod explicit;
+mod list;
+pub mod order;
 mod tableau;
+mod tree;
 
+pub use drawing::{Misdrawn, Slip};
+pub use list::{all, find};
 pub use tableau::{Dense, ExactTableau, Scheme, Tableau};
