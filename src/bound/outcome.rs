@@ -131,7 +131,15 @@ pub struct Mesh {
     pub smallest: f64,
     /// Largest step.
     pub largest: f64,
-    /// The cost of the companion.
+    /// Steps rejected, by cause.
+    pub rejected: Rejections,
+    /// Evaluations of all the rates of the model, dense output included.
+    pub evaluations: u64,
+    /// Kinks and jumps that were located and made mesh points.
+    pub switches: u64,
+}
+
+/// The cost of the companion.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Companion {
     /// Its own steps.
