@@ -8,6 +8,9 @@ mod drawing;
 mod explicit;
 mod list;
 pub mod order;
+mod region;
+pub mod stability;
+mod sturm;
 mod tableau;
 mod tree;
 
