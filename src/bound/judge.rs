@@ -101,7 +101,8 @@ pub fn judge(evidence: &Evidence<'_>) -> Judgement {
     estimates.companion = companion;
     let beside = companion.map_or(0.0, f64::abs);
 
-    let (mut grade, mut estimate, mut safety, mut why);
+    let (mut grade, mut estimate, mut safety);
+    let mut why: String;
     match pattern {
         Pattern::Rounding(rest) => {
             grade = Grade::Converged;
@@ -112,7 +113,7 @@ pub fn judge(evidence: &Evidence<'_>) -> Judgement {
                 grade = Grade::Indicated;
                 safety = SAFETY_INDICATED;
                 estimate = beside;
-                "the meshes agree to rounding, but the companion contradicts them".clone_into(&mut why);
+                why = "the meshes agree to rounding, but the companion contradicts them".to_owned();
             }
         }
         Pattern::Asymptotic(error) => {
@@ -150,7 +151,7 @@ pub fn judge(evidence: &Evidence<'_>) -> Judgement {
             grade = Grade::Indicated;
             safety = SAFETY_INDICATED;
             estimate = larger(rest, beside);
-            "the values do not approach a limit from one side: the spread of the meshes".clone_into(&mut why);
+            why = "the values do not approach a limit from one side: the spread of the meshes".to_owned();
         }
     }
     let parted = spread > PARTED * evidence.range && spread > floor && grade == Grade::Indicated;
@@ -164,7 +165,7 @@ pub fn judge(evidence: &Evidence<'_>) -> Judgement {
         grade = Grade::Indicated;
         safety = SAFETY_INDICATED;
         estimate = larger(larger(estimate, beside), spread);
-        cap.clone_into(&mut why);
+        why = cap.to_owned();
     }
     estimates.safety = safety;
     estimates.truncation = safety * estimate;

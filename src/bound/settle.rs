@@ -323,7 +323,7 @@ fn gather(
         companion: base.follower.as_ref().map(Follower::cost),
         quantities,
         rows: court.rows(&base.samplers, &sampled, corrected_samples),
-        curves: court.curves(&base, &sampled, corrected_samples),
+        curves: court.curves(&base.samplers, std::mem::take(&mut base.traces), &sampled, corrected_samples),
         invariants: (plan.invariants.iter().enumerate())
             .map(|(i, (name, expression, _))| Drift {
                 name: name.clone(),
@@ -576,10 +576,10 @@ impl Court<'_> {
         Some(Rows { every: every.clone(), columns, times })
     }
 
-    fn curves(&self, base: &Base, halved: &[&Vec<Sampler>], corrected: Option<&Vec<Sampler>>) -> Vec<Curve> {
-        let sampled = Sampled::new(CURVES, &base.samplers, halved, corrected);
+    fn curves(&self, base: &[Sampler], traces: Vec<Trace>, halved: &[&Vec<Sampler>], corrected: Option<&Vec<Sampler>>) -> Vec<Curve> {
+        let sampled = Sampled::new(CURVES, base, halved, corrected);
         let mut curves = Vec::new();
-        for (i, (curve, trace)) in self.plan.curves.iter().zip(&base.traces).enumerate() {
+        for (i, (curve, trace)) in self.plan.curves.iter().zip(traces).enumerate() {
             let count = sampled.base.rows().len() / self.plan.curves.len();
             let values: Vec<f64> = (0..count).map(|k| sampled.value(k, i)).collect();
             let (scale, range) = extent(&values);
@@ -597,7 +597,7 @@ impl Court<'_> {
                 unit: curve.unit.clone(),
                 against: curve.against.clone(),
                 against_unit: curve.against_unit.clone(),
-                points: trace.points(),
+                points: trace.finish(),
                 bound: worst.map(|(bound, _)| bound),
                 grade: worst.map_or(Grade::Unbounded, |(_, grade)| grade),
             });

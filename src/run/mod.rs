@@ -10,6 +10,7 @@ pub mod sample;
 pub mod spectrum;
 pub mod stop;
 pub mod system;
+pub mod thin;
 pub mod trace;
 pub mod watch;
 

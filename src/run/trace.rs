@@ -1,6 +1,7 @@
 //! The points of a curve of a chart, thinned as the run goes by.
 
 use super::system::Values;
+use super::thin::{ColumnThinner, PathThinner};
 use super::{Accepted, Observer};
 use crate::plan::{CurvePlan, RunPlan};
 
@@ -8,8 +9,14 @@ use crate::plan::{CurvePlan, RunPlan};
 #[derive(Debug)]
 pub struct Trace {
     values: Values,
-    points: Vec<(f64, f64)>,
+    points: Thinner,
     y: Vec<f64>,
+}
+
+#[derive(Debug)]
+enum Thinner {
+    Columns(ColumnThinner),
+    Path(PathThinner),
 }
 
 /// Places inside a step at which the curve is sampled.
@@ -20,7 +27,11 @@ impl Trace {
     pub fn new(plan: &RunPlan, curve: &CurvePlan) -> Self {
         let mut trace = Trace {
             values: Values::new(&plan.graph, &[curve.against_node, curve.node], &plan.parameters),
-            points: Vec::new(),
+            points: if curve.against == "t" {
+                Thinner::Columns(ColumnThinner::new(plan.from, plan.until))
+            } else {
+                Thinner::Path(PathThinner::new())
+            },
             y: plan.start.clone(),
         };
         trace.push(plan.from, &[]);
@@ -30,12 +41,18 @@ impl Trace {
     fn push(&mut self, t: f64, modes: &[i8]) {
         let mut out = [0.0; 2];
         self.values.at(t, &self.y, modes, &mut out);
-        self.points.push((out[0], out[1]));
+        match &mut self.points {
+            Thinner::Columns(thinner) => thinner.push(out[0], out[1]),
+            Thinner::Path(thinner) => thinner.push(out[0], out[1]),
+        }
     }
 
     /// The points.
-    pub fn points(&self) -> Vec<(f64, f64)> {
-        self.points.clone()
+    pub fn finish(self) -> Vec<(f64, f64)> {
+        match self.points {
+            Thinner::Columns(thinner) => thinner.finish(),
+            Thinner::Path(thinner) => thinner.finish(),
+        }
     }
 }
 

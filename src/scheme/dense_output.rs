@@ -91,7 +91,6 @@ impl Piece {
     ///
     /// # Source
     /// Hermite interpolation; Hairer, Norsett & Wanner I, sect. II.6.
-    #[expect(clippy::too_many_arguments, reason = "the two ends of a step, each with time, state and rate")]
     pub fn hermite(&mut self, t: f64, y: &[f64], f: &[f64], t_new: f64, y_new: &[f64], f_new: &[f64]) {
         let n = self.states;
         let h = t_new - t;
