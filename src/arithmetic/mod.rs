@@ -4,6 +4,7 @@
 //! multiply-add, or `f64::max` and `f64::min`.
 
 pub mod elementary;
+mod power_guard;
 pub mod ratio;
 
 /// The larger of two numbers by comparison and selection; the first where they are equal.
