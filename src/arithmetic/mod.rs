@@ -3,6 +3,7 @@
 //! Invariant: no other module calls an elementary function of the standard library, a fused
 //! multiply-add, or `f64::max` and `f64::min`.
 
+pub mod eigenvalues;
 pub mod elementary;
 mod power_guard;
 pub mod ratio;
