@@ -6,6 +6,7 @@
 pub mod eigenvalues;
 pub mod elementary;
 pub mod root;
+mod power_guard;
 pub mod ratio;
 
 /// The larger of two numbers by comparison and selection; the first where they are equal.

@@ -306,6 +306,40 @@ mod tests {
     }
 
     #[test]
+    fn every_pattern_of_nodes_gives_closed_loops() {
+        let constant = |value: f64| Stability { exact: vec![], coefficients: vec![value] };
+        let cycles = |pattern: u32, middle: &Stability| {
+            // Three by three nodes with a rim of unstable ones.
+            let mut grid =
+                Grid { cell: 1.0, frame: Frame { low: (-2, -2), high: (2, 2) }, stable: vec![false; 25] };
+            for node in (0..9).filter(|node| pattern >> node & 1 == 1) {
+                grid.stable[(node / 3 + 1) * 5 + node % 3 + 1] = true;
+            }
+            let mut next = grid.segments(middle);
+            let mut cycles = 0;
+            while let Some((first, mut line)) = next.pop_first() {
+                while line != first {
+                    line =
+                        next.remove(&line).unwrap_or_else(|| panic!("pattern {pattern:b} has an open end"));
+                }
+                cycles += 1;
+            }
+            cycles
+        };
+        for pattern in 0..512 {
+            for middle in [constant(0.5), constant(2.0)] {
+                assert_eq!(cycles(pattern, &middle) > 0, pattern > 0, "pattern {pattern:b}");
+            }
+        }
+        // Two nodes across a diagonal are one loop where the middle of their cell is stable, else two.
+        for diagonal in [0b000_010_001, 0b000_001_010, 0b010_100_000, 0b100_010_000] {
+            assert_eq!((cycles(diagonal, &constant(0.5)), cycles(diagonal, &constant(2.0))), (1, 2));
+        }
+        // A ring holds an island of unstable points.
+        assert_eq!(cycles(0b111_101_111, &constant(2.0)), 2);
+    }
+
+    #[test]
     fn a_constant_polynomial_has_no_outline() {
         let exact = crate::scheme::Tableau::read("0 |\n 1 | 1\n b | 0 0").unwrap().exact;
         assert!(Stability::of_weights(&exact, &exact.b).boundary(50).is_empty());
