@@ -5,9 +5,9 @@
 
 pub mod eigenvalues;
 pub mod elementary;
-pub mod root;
 mod power_guard;
 pub mod ratio;
+pub mod root;
 
 /// The larger of two numbers by comparison and selection; the first where they are equal.
 /// A NaN in either gives NaN.

@@ -110,7 +110,8 @@ fn reached(outcome: &RunOutcome, aims: &[AimPlan]) -> String {
         .iter()
         .map(|aim| {
             let quantity = &outcome.quantities[aim.quantity];
-            let bound = quantity.bound.map_or_else(|| "no bound".to_owned(), |bound| format!("bound {bound:.1e}"));
+            let bound =
+                quantity.bound.map_or_else(|| "no bound".to_owned(), |bound| format!("bound {bound:.1e}"));
             format!("{}: {bound}, {}, where {} is aimed at", quantity.name, quantity.grade.word(), aim.text)
         })
         .collect();

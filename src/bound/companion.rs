@@ -127,10 +127,12 @@ impl Observer for Follower {
         let width = 1.0 / PARTS as f64;
         for part in 0..PARTS {
             let from = part as f64 * width;
-            let (t, t_new) = (piece.time(from), piece.time(if part + 1 == PARTS { 1.0 } else { from + width }));
+            let (t, t_new) =
+                (piece.time(from), piece.time(if part + 1 == PARTS { 1.0 } else { from + width }));
             let Follower { system, stepper, e, e_new, f, f_new, room, .. } = self;
             let mut rates = ErrorRates { piece, system, room };
-            let done = checked(&mut rates, t, e, f).and_then(|()| stepper.step(&mut rates, t, e, f, t_new, e_new, f_new));
+            let done = checked(&mut rates, t, e, f)
+                .and_then(|()| stepper.step(&mut rates, t, e, f, t_new, e_new, f_new));
             if done.is_err() || e_new.iter().any(|e| !e.is_finite()) {
                 self.lost = Some(format!("the companion met a rate that is not finite at t = {t}"));
                 return;
@@ -172,7 +174,10 @@ impl Observer for Follower {
         let speed = (levels[flip.switch] - level) / ahead;
         let delay = if level == 0.0 { 0.0 } else { -level / speed };
         if !delay.is_finite() || delay.abs() > larger(self.last_h, ahead) {
-            self.lost = Some(format!("the companion lost a kink or jump that is passed too flatly at t = {}", flip.time));
+            self.lost = Some(format!(
+                "the companion lost a kink or jump that is passed too flatly at t = {}",
+                flip.time
+            ));
             return;
         }
         for i in 0..n {

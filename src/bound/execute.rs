@@ -107,8 +107,13 @@ fn stopped(run: &RunPlan, model: &Model, stop: &Stop) -> Fault {
 
 /// Up to four states with their values: `z = 1.5, v = -2`.
 fn state_text(model: &Model, values: &[f64]) -> String {
-    let list: Vec<String> =
-        model.states.iter().zip(values).take(4).map(|(s, y)| format!("{} = {y:.6e}", s.entry.name.value)).collect();
+    let list: Vec<String> = model
+        .states
+        .iter()
+        .zip(values)
+        .take(4)
+        .map(|(s, y)| format!("{} = {y:.6e}", s.entry.name.value))
+        .collect();
     let more = if values.len() > 4 { ", ..." } else { "" };
     format!("{}{more}", list.join(", "))
 }

@@ -145,7 +145,11 @@ pub fn judge(evidence: &Evidence<'_>) -> Judgement {
             grade = Grade::Indicated;
             safety = SAFETY_INDICATED;
             estimate = larger(error, beside);
-            why = format!("monotone, but observed order {} is not near {}", observed(&estimates), evidence.order);
+            why = format!(
+                "monotone, but observed order {} is not near {}",
+                observed(&estimates),
+                evidence.order
+            );
         }
         Pattern::Oscillating(rest) => {
             grade = Grade::Indicated;
@@ -157,7 +161,10 @@ pub fn judge(evidence: &Evidence<'_>) -> Judgement {
     let parted = spread > PARTED * evidence.range && spread > floor && grade == Grade::Indicated;
     let diverging = second.abs() >= first.abs();
     if parted && diverging {
-        return unbounded("the meshes do not approach each other: the run is chaotic or not resolved", estimates);
+        return unbounded(
+            "the meshes do not approach each other: the run is chaotic or not resolved",
+            estimates,
+        );
     }
     if let Some(cap) = evidence.cap
         && grade < Grade::Indicated
@@ -188,8 +195,8 @@ fn pattern(first: f64, second: f64, order: f64, floor: f64, estimates: &mut Esti
     if ratio > 1.0 && ratio.is_finite() {
         estimates.observed_order = Some(elementary::ln(ratio) / std::f64::consts::LN_2);
     }
-    if size_fine <= floor {
-        // The finer meshes agree to rounding, so the first difference is the error.
+    if size_fine <= floor && size <= 4.0 * power * floor {
+        // The finer meshes agree to rounding as the order lets expect, so the first difference is the error.
         estimates.halving = Some(first);
         return Pattern::Rounding(size + 2.0 * floor);
     }

@@ -5,6 +5,7 @@
 
 pub mod aim;
 mod companion;
+mod court;
 mod execute;
 pub mod judge;
 mod outcome;
@@ -14,7 +15,7 @@ mod verdict;
 
 pub use execute::execute;
 pub use outcome::{
-    Companion, CriterionOutcome, Curve, Drift, Estimates, ExactError, Grade, Mesh, Outcome, Quantity, RowColumn, Rows,
-    RunOutcome, SpectrumPoint, Steps,
+    Companion, CriterionOutcome, Curve, Drift, Estimates, ExactError, Grade, Mesh, Outcome, Quantity,
+    RowColumn, Rows, RunOutcome, SpectrumPoint, Steps,
 };
 pub use verdict::verdict;

@@ -22,7 +22,8 @@ pub struct Checked {
 /// All faults that can be found are added to `faults`; `None` where one of them is an error.
 pub fn check(sources: &Sources, file: FileId, limit: Option<u64>, faults: &mut Faults) -> Option<Checked> {
     let study = study::read(sources, file, faults)?;
-    let models: Vec<Option<Model>> = study.blocks.models.iter().map(|block| model::check(block, faults)).collect();
+    let models: Vec<Option<Model>> =
+        study.blocks.models.iter().map(|block| model::check(block, faults)).collect();
     let plan = plan::lay_out(&study, &models, limit, faults);
     if faults.any_error() {
         return None;

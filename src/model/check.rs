@@ -44,9 +44,11 @@ impl Scope for NameScope<'_> {
         }
     }
     fn names(&self) -> Vec<&str> {
-        let usable = self.symbols.0.iter().filter(|(_, symbol)| {
-            self.names == Names::All || matches!(symbol, Symbol::Parameter(_))
-        });
+        let usable = self
+            .symbols
+            .0
+            .iter()
+            .filter(|(_, symbol)| self.names == Names::All || matches!(symbol, Symbol::Parameter(_)));
         let time = (self.names != Names::Parameters).then_some("t");
         usable.map(|(name, _)| name.as_str()).chain(time).collect()
     }
@@ -65,8 +67,12 @@ pub fn check(block: &ModelBlock, faults: &mut Faults) -> Option<Model> {
     let mut graph = Graph::default();
     if block.states.is_empty() {
         faults.add(
-            Fault::error("no-states", block.name.at, format!("the model `{}` has no states", block.name.value))
-                .help("list them under `states`, each with its start value"),
+            Fault::error(
+                "no-states",
+                block.name.at,
+                format!("the model `{}` has no states", block.name.value),
+            )
+            .help("list them under `states`, each with its start value"),
         );
     }
     derived(block, &mut graph, &mut symbols, faults);
@@ -96,17 +102,25 @@ pub fn check(block: &ModelBlock, faults: &mut Faults) -> Option<Model> {
         let rate = block.rates.iter().find(|(name, _)| name.value == entry.name.value);
         let Some((_, rate_text)) = rate else {
             faults.add(
-                Fault::error("no-rate", entry.name.at, format!("the state `{}` has no rate", entry.name.value))
-                    .help(format!("add it under `rates`: `{}: ...`; write 0 for a state that stays", entry.name.value)),
+                Fault::error(
+                    "no-rate",
+                    entry.name.at,
+                    format!("the state `{}` has no rate", entry.name.value),
+                )
+                .help(format!(
+                    "add it under `rates`: `{}: ...`; write 0 for a state that stays",
+                    entry.name.value
+                )),
             );
             continue;
         };
         let rate = lower(rate_text, &mut graph, &scope, faults);
-        let exact = block.exact.iter().find(|(name, _)| name.value == entry.name.value).and_then(|(_, text)| {
-            let scope = NameScope { symbols: &symbols, names: Names::TimeAndParameters };
-            // Closed forms may be built from derived quantities of time alone.
-            Some((text.clone(), lower(text, &mut graph, &scope, faults)?))
-        });
+        let exact =
+            block.exact.iter().find(|(name, _)| name.value == entry.name.value).and_then(|(_, text)| {
+                let scope = NameScope { symbols: &symbols, names: Names::TimeAndParameters };
+                // Closed forms may be built from derived quantities of time alone.
+                Some((text.clone(), lower(text, &mut graph, &scope, faults)?))
+            });
         if let (Some(start), Some(rate)) = (start, rate) {
             states.push(State {
                 entry: entry.clone(),
@@ -136,7 +150,13 @@ pub fn check(block: &ModelBlock, faults: &mut Faults) -> Option<Model> {
     for (name, text) in &block.invariants {
         let scope = NameScope { symbols: &symbols, names: Names::All };
         if let Some(node) = lower(text, &mut graph, &scope, faults) {
-            invariants.push(Expression { name: name.clone(), text: text.clone(), unit: None, about: None, node });
+            invariants.push(Expression {
+                name: name.clone(),
+                text: text.clone(),
+                unit: None,
+                about: None,
+                node,
+            });
         }
     }
     (faults.errors() == before).then(|| Model {
@@ -154,7 +174,8 @@ pub fn check(block: &ModelBlock, faults: &mut Faults) -> Option<Model> {
 fn collect_names(block: &ModelBlock, faults: &mut Faults) -> Symbols {
     let mut symbols = Symbols::default();
     let mut places: BTreeMap<&str, Span> = BTreeMap::new();
-    let parameters = block.parameters.iter().enumerate().map(|(i, entry)| (&entry.name, Symbol::Parameter(i)));
+    let parameters =
+        block.parameters.iter().enumerate().map(|(i, entry)| (&entry.name, Symbol::Parameter(i)));
     let states = block.states.iter().enumerate().map(|(i, entry)| (&entry.name, Symbol::State(i)));
     let derived = block.derived.iter().map(|entry| (&entry.name, Symbol::Faulty));
     for (name, symbol) in parameters.chain(states).chain(derived) {
@@ -169,8 +190,12 @@ fn collect_names(block: &ModelBlock, faults: &mut Faults) -> Symbols {
         }
         if text == "e" || text == "pi" {
             faults.add(
-                Fault::note("shadowed-constant", name.at, format!("`{text}` now means this, not the number {}", number(text)))
-                    .help("all expressions of this model use it so"),
+                Fault::note(
+                    "shadowed-constant",
+                    name.at,
+                    format!("`{text}` now means this, not the number {}", number(text)),
+                )
+                .help("all expressions of this model use it so"),
             );
         }
         if let Some(first) = places.get(text) {
@@ -244,8 +269,12 @@ fn circle_fault(block: &ModelBlock, circle: &[usize], faults: &mut Faults) {
     let names: Vec<&str> = circle.iter().map(|i| block.derived[*i].name.value.as_str()).collect();
     let first = &block.derived[circle[0]];
     let way = format!("{} -> {}", names.join(" -> "), names[0]);
-    let mut fault = Fault::error("circle", first.name.at, format!("derived quantities need each other in a circle: {way}"))
-        .help("break the circle: make one of them a state, or solve it by hand");
+    let mut fault = Fault::error(
+        "circle",
+        first.name.at,
+        format!("derived quantities need each other in a circle: {way}"),
+    )
+    .help("break the circle: make one of them a state, or solve it by hand");
     for i in &circle[1..] {
         fault = fault.also(block.derived[*i].name.at, "also in the circle");
     }
@@ -263,8 +292,12 @@ fn stray(list: &[(Text, Text)], block: &ModelBlock, what: &str, faults: &mut Fau
                 |near| format!("did you mean `{near}`?"),
             );
             faults.add(
-                Fault::error("no-state", name.at, format!("a {what} is given for `{}`, which is no state", name.value))
-                    .help(help),
+                Fault::error(
+                    "no-state",
+                    name.at,
+                    format!("a {what} is given for `{}`, which is no state", name.value),
+                )
+                .help(help),
             );
         }
     }

@@ -50,7 +50,13 @@ pub enum Names {
 impl Model {
     /// Adds an expression of this model's names to `graph`, which is the model's or a copy that grows. `None`
     /// with faults where it is wrong.
-    pub fn express(&self, graph: &mut Graph, text: &Text, names: Names, faults: &mut Faults) -> Option<NodeId> {
+    pub fn express(
+        &self,
+        graph: &mut Graph,
+        text: &Text,
+        names: Names,
+        faults: &mut Faults,
+    ) -> Option<NodeId> {
         expression::lower(text, graph, &NameScope { symbols: &self.symbols, names }, faults)
     }
 

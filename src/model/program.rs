@@ -108,7 +108,10 @@ impl Program {
 
     fn fresh(&mut self) -> u32 {
         self.registers += 1;
-        #[expect(clippy::cast_possible_truncation, reason = "the size of a study limits the number of registers")]
+        #[expect(
+            clippy::cast_possible_truncation,
+            reason = "the size of a study limits the number of registers"
+        )]
         let register = (self.registers - 1) as u32;
         register
     }
@@ -138,7 +141,9 @@ impl Program {
         let mode = |switch: u32| modes.get(switch as usize).copied().unwrap_or(0);
         for instruction in &self.instructions {
             match *instruction {
-                Instruction::Unary(function, out, a) => r[out as usize] = apply_unary(function, r[a as usize]),
+                Instruction::Unary(function, out, a) => {
+                    r[out as usize] = apply_unary(function, r[a as usize])
+                }
                 Instruction::Binary(operation, out, a, b) => {
                     r[out as usize] = apply(operation, r[a as usize], r[b as usize]);
                 }

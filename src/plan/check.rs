@@ -35,7 +35,7 @@ pub(super) fn steps(
     scheme: &'static Scheme,
     (from, until): (f64, f64),
     limit: u64,
-    quantities: &Option<Vec<QuantityPlan>>,
+    quantities: Option<&[QuantityPlan]>,
     faults: &mut Faults,
 ) -> Option<StepsPlan> {
     match &block.control {
@@ -50,16 +50,24 @@ pub(super) fn steps(
             }
             if step.number > span && span > 0.0 {
                 faults.add(
-                    Fault::error("step-beyond-span", step.at, format!("the step {} is longer than the run", step.digits))
-                        .help(format!("the run lasts {span}")),
+                    Fault::error(
+                        "step-beyond-span",
+                        step.at,
+                        format!("the step {} is longer than the run", step.digits),
+                    )
+                    .help(format!("the run lasts {span}")),
                 );
                 return None;
             }
             let count = Nominal::uniform(from, until, step.number).steps();
             if count > limit {
                 faults.add(
-                    Fault::error("too-many-steps", step.at, format!("the run would take {count} steps, the limit is {limit}"))
-                        .help("take a larger step, or raise `limit` in the run or `--limit`"),
+                    Fault::error(
+                        "too-many-steps",
+                        step.at,
+                        format!("the run would take {count} steps, the limit is {limit}"),
+                    )
+                    .help("take a larger step, or raise `limit` in the run or `--limit`"),
                 );
                 return None;
             }
@@ -89,15 +97,23 @@ pub(super) fn steps(
             }
             if tolerance.unit.is_some() {
                 faults.add(
-                    Fault::error("tolerance-with-unit", tolerance.at, "a tolerance is relative and carries no unit")
-                        .help("write it as in `tolerance: 1e-6`; the typical size of a state is its `scale`"),
+                    Fault::error(
+                        "tolerance-with-unit",
+                        tolerance.at,
+                        "a tolerance is relative and carries no unit",
+                    )
+                    .help("write it as in `tolerance: 1e-6`; the typical size of a state is its `scale`"),
                 );
                 return None;
             }
             if tolerance.number < TOLERANCES.0 || tolerance.number > TOLERANCES.1 {
                 faults.add(
-                    Fault::error("wrong-tolerance", tolerance.at, format!("the tolerance is {}", tolerance.digits))
-                        .help(format!("give one from {:e} to {}", TOLERANCES.0, TOLERANCES.1)),
+                    Fault::error(
+                        "wrong-tolerance",
+                        tolerance.at,
+                        format!("the tolerance is {}", tolerance.digits),
+                    )
+                    .help(format!("give one from {:e} to {}", TOLERANCES.0, TOLERANCES.1)),
                 );
                 return None;
             }
@@ -105,9 +121,17 @@ pub(super) fn steps(
             for state in &model.states {
                 if let Some(scale) = &state.entry.scale {
                     if scale.number <= 0.0 {
-                        faults.add(Fault::error("scale-not-positive", scale.at, "a typical scale must be above zero"));
+                        faults.add(Fault::error(
+                            "scale-not-positive",
+                            scale.at,
+                            "a typical scale must be above zero",
+                        ));
                     } else if scale.unit != state.unit {
-                        faults.add(unit_differs(scale, state.unit.as_ref(), &format!("`{}`", state.entry.name.value)));
+                        faults.add(unit_differs(
+                            scale,
+                            state.unit.as_ref(),
+                            &format!("`{}`", state.entry.name.value),
+                        ));
                     }
                 }
                 scales.push(state.entry.scale.as_ref().map(|scale| scale.number));
@@ -122,7 +146,7 @@ pub(super) fn steps(
                 );
                 return None;
             }
-            aims(block, quantities.as_ref()?, faults).map(StepsPlan::Aim)
+            aims(block, quantities?, faults).map(StepsPlan::Aim)
         }
     }
 }
@@ -142,7 +166,8 @@ pub(super) fn criteria(study: &Study, plan: &Plan, faults: &mut Faults) {
             && quantity.unit != entry.limit.unit
         {
             let of = format!("`{}`", entry.quantity.value);
-            let mut fault = unit_differs(&entry.limit, quantity.unit.as_ref(), &of).also(quantity.at, "this quantity");
+            let mut fault =
+                unit_differs(&entry.limit, quantity.unit.as_ref(), &of).also(quantity.at, "this quantity");
             if quantity.unit.is_none() {
                 fault = fault.help("give the quantity its unit: `{take: ..., unit: ...}`");
             }

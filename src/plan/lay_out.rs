@@ -20,7 +20,12 @@ use crate::study::{Study, Text};
 /// where a model has faults of its own. `limit` is the largest number of steps of a run that does not say its own.
 ///
 /// Faults are added to `faults`; `None` where a run could not be laid out.
-pub fn lay_out(study: &Study, models: &[Option<Model>], limit: Option<u64>, faults: &mut Faults) -> Option<Plan> {
+pub fn lay_out(
+    study: &Study,
+    models: &[Option<Model>],
+    limit: Option<u64>,
+    faults: &mut Faults,
+) -> Option<Plan> {
     let before = faults.errors();
     let mut runs = Vec::new();
     for block in &study.blocks.runs {
@@ -51,8 +56,12 @@ fn lay_out_run(
     let (from, until) = (block.from.as_ref().map_or(0.0, |from| from.number), block.until.number);
     if until <= from {
         faults.add(
-            Fault::error("empty-span", block.until.at, format!("the run ends at {until}, not after its start at {from}"))
-                .help("`until` must lie after `from` (0 where it is left out)"),
+            Fault::error(
+                "empty-span",
+                block.until.at,
+                format!("the run ends at {until}, not after its start at {from}"),
+            )
+            .help("`until` must lie after `from` (0 where it is left out)"),
         );
     }
     let mut graph = model.graph.clone();
@@ -63,7 +72,9 @@ fn lay_out_run(
     let columns = columns(study, block, model, &mut graph, faults);
     let own_limit = block.limit.as_ref().and_then(|value| whole_limit(value, faults));
     let limit = own_limit.or(limit).unwrap_or(DEFAULT_LIMIT);
-    let steps = scheme.and_then(|scheme| check::steps(block, model, scheme, (from, until), limit, &quantities, faults));
+    let steps = scheme.and_then(|scheme| {
+        check::steps(block, model, scheme, (from, until), limit, quantities.as_deref(), faults)
+    });
     let rows = block.rows.as_ref().map(|rows| {
         let unit = rows.unit.as_ref().map_or_else(String::new, |unit| format!(" {unit}"));
         let count = (until - from) / rows.number;
@@ -126,7 +137,8 @@ fn find_scheme(name: &Text, faults: &mut Faults) -> Option<&'static scheme::Sche
             None => "`halfstep schemes` lists them all".to_owned(),
         };
         faults.add(
-            Fault::error("unknown-scheme", name.at, format!("there is no scheme `{}`", name.value)).help(help),
+            Fault::error("unknown-scheme", name.at, format!("there is no scheme `{}`", name.value))
+                .help(help),
         );
     }
     found
@@ -134,10 +146,18 @@ fn find_scheme(name: &Text, faults: &mut Faults) -> Option<&'static scheme::Sche
 
 fn whole_limit(value: &crate::unit::Value, faults: &mut Faults) -> Option<u64> {
     if value.number >= 1.0 && value.number <= 1e15 && value.number.fract() == 0.0 && value.unit.is_none() {
-        #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "a whole number below 1e15")]
+        #[expect(
+            clippy::cast_possible_truncation,
+            clippy::cast_sign_loss,
+            reason = "a whole number below 1e15"
+        )]
         return Some(value.number as u64);
     }
-    faults.add(Fault::error("wrong-limit", value.at, "`limit` must be a whole number of steps from 1 to 1e15"));
+    faults.add(Fault::error(
+        "wrong-limit",
+        value.at,
+        "`limit` must be a whole number of steps from 1 to 1e15",
+    ));
     None
 }
 
@@ -178,7 +198,10 @@ fn constants(block: &RunBlock, model: &Model, graph: &Graph, faults: &mut Faults
                     Fault::error(
                         "unknown-name",
                         name.at,
-                        format!("the model `{}` has no parameter or state `{}`", model.name.value, name.value),
+                        format!(
+                            "the model `{}` has no parameter or state `{}`",
+                            model.name.value, name.value
+                        ),
                     )
                     .help(help),
                 );
@@ -207,8 +230,12 @@ fn constants(block: &RunBlock, model: &Model, graph: &Graph, faults: &mut Faults
                 Start::Expression(text) => text.at,
             };
             faults.add(
-                Fault::error("not-finite", at, format!("the start value of `{}` is not finite", entry.name.value))
-                    .also(block.name.at, "in this run"),
+                Fault::error(
+                    "not-finite",
+                    at,
+                    format!("the start value of `{}` is not finite", entry.name.value),
+                )
+                .also(block.name.at, "in this run"),
             );
         }
     }
@@ -227,30 +254,43 @@ fn quantities(
     let mut list = Vec::new();
     for entry in &block.quantities {
         let stated = entry.unit.as_ref().map(|unit| unit.value.clone());
-        let mut express =
-            |text: &Text, faults: &mut Faults| model.express(graph, text, Names::All, faults).map(|node| (text.clone(), node));
+        let mut express = |text: &Text, faults: &mut Faults| {
+            model.express(graph, text, Names::All, faults).map(|node| (text.clone(), node))
+        };
         let time = || time_unit.cloned();
         let found = match &entry.reading {
-            Reading::Final(text) => express(text, faults).map(|(t, node)| (node, Measure::Final, model.unit_of(&t.value))),
+            Reading::Final(text) => {
+                express(text, faults).map(|(t, node)| (node, Measure::Final, model.unit_of(&t.value)))
+            }
             Reading::Highest(text) => {
                 express(text, faults).map(|(t, node)| (node, Measure::Highest, model.unit_of(&t.value)))
             }
             Reading::Lowest(text) => {
                 express(text, faults).map(|(t, node)| (node, Measure::Lowest, model.unit_of(&t.value)))
             }
-            Reading::Mean(text) => express(text, faults).map(|(t, node)| (node, Measure::Mean, model.unit_of(&t.value))),
+            Reading::Mean(text) => {
+                express(text, faults).map(|(t, node)| (node, Measure::Mean, model.unit_of(&t.value)))
+            }
             Reading::Integral(text) => express(text, faults).map(|(_, node)| (node, Measure::Integral, None)),
             Reading::At(text, at) => {
                 if at.number < from || at.number > until {
                     faults.add(
-                        Fault::error("time-outside-run", at.at, format!("{} lies outside the run", at.digits))
-                            .help(format!("the run goes from {from} to {until}")),
+                        Fault::error(
+                            "time-outside-run",
+                            at.at,
+                            format!("{} lies outside the run", at.digits),
+                        )
+                        .help(format!("the run goes from {from} to {until}")),
                     );
                 }
                 express(text, faults).map(|(t, node)| (node, Measure::At(at.number), model.unit_of(&t.value)))
             }
-            Reading::TimeOfHighest(text) => express(text, faults).map(|(_, node)| (node, Measure::TimeOfHighest, time())),
-            Reading::TimeOfLowest(text) => express(text, faults).map(|(_, node)| (node, Measure::TimeOfLowest, time())),
+            Reading::TimeOfHighest(text) => {
+                express(text, faults).map(|(_, node)| (node, Measure::TimeOfHighest, time()))
+            }
+            Reading::TimeOfLowest(text) => {
+                express(text, faults).map(|(_, node)| (node, Measure::TimeOfLowest, time()))
+            }
             Reading::TimeWhen(which, passage) => {
                 let level = level(passage, model, graph, parameters, faults);
                 let node = model.express(graph, &passage.expression, Names::All, faults);
@@ -293,7 +333,11 @@ fn level(
             if let Some(known) = model.unit_of(&passage.expression.value)
                 && value.unit.as_ref() != Some(&known)
             {
-                faults.add(check::unit_differs(value, Some(&known), &format!("`{}`", passage.expression.value)));
+                faults.add(check::unit_differs(
+                    value,
+                    Some(&known),
+                    &format!("`{}`", passage.expression.value),
+                ));
             }
             Some(value.number)
         }
@@ -356,8 +400,12 @@ fn curves(
             if block.rows.is_none() {
                 good = false;
                 faults.add(
-                    Fault::error("no-rows", trace.run.at, format!("the run `{}` has no rows to mark", block.name.value))
-                        .help("add `rows: every ...` to the run, or show it under `lines`"),
+                    Fault::error(
+                        "no-rows",
+                        trace.run.at,
+                        format!("the run `{}` has no rows to mark", block.name.value),
+                    )
+                    .help("add `rows: every ...` to the run, or show it under `lines`"),
                 );
             }
         }
@@ -382,7 +430,11 @@ fn columns(
         });
     }
     for derived in &model.derived {
-        list.push(ColumnPlan { name: derived.name.value.clone(), unit: derived.unit.clone(), node: derived.node });
+        list.push(ColumnPlan {
+            name: derived.name.value.clone(),
+            unit: derived.unit.clone(),
+            node: derived.node,
+        });
     }
     let mut wanted: Vec<&Text> = Vec::new();
     for table in &study.blocks.tables {
@@ -392,8 +444,12 @@ fn columns(
             wanted.extend(columns);
             if block.rows.is_none() {
                 faults.add(
-                    Fault::error("no-rows", run.at, format!("the run `{}` has no rows to list", block.name.value))
-                        .help("add `rows: every ...` to the run"),
+                    Fault::error(
+                        "no-rows",
+                        run.at,
+                        format!("the run `{}` has no rows to list", block.name.value),
+                    )
+                    .help("add `rows: every ...` to the run"),
                 );
             }
         }
@@ -422,7 +478,11 @@ fn columns(
 }
 
 /// The plan of an aim on every quantity it names.
-pub(super) fn aims(block: &RunBlock, quantities: &[QuantityPlan], faults: &mut Faults) -> Option<Vec<AimPlan>> {
+pub(super) fn aims(
+    block: &RunBlock,
+    quantities: &[QuantityPlan],
+    faults: &mut Faults,
+) -> Option<Vec<AimPlan>> {
     let Control::Aim(aims) = &block.control else {
         return None;
     };
@@ -442,7 +502,11 @@ pub(super) fn aims(block: &RunBlock, quantities: &[QuantityPlan], faults: &mut F
             if wanted {
                 matched = true;
                 if quantity.unit.is_some() && quantity.unit != aim.bound.unit {
-                    faults.add(check::unit_differs(&aim.bound, quantity.unit.as_ref(), &format!("`{}`", quantity.name)));
+                    faults.add(check::unit_differs(
+                        &aim.bound,
+                        quantity.unit.as_ref(),
+                        &format!("`{}`", quantity.name),
+                    ));
                 }
                 let text = format!("{}: {}{unit}", quantity.name, aim.bound.digits);
                 list.push(AimPlan { quantity: i, bound: aim.bound.number, text });
@@ -453,10 +517,9 @@ pub(super) fn aims(block: &RunBlock, quantities: &[QuantityPlan], faults: &mut F
                 Some(name) => (name.at, format!("the run has no quantity `{}` to aim at", name.value)),
                 None => (aim.bound.at, "no quantity of the run carries the unit of this aim".to_owned()),
             };
-            faults.add(
-                Fault::error("aim-without-quantity", at, message)
-                    .help("name it: `aim: {QUANTITY: 0.01 m}`, and give the quantity a `unit` where it has none"),
-            );
+            faults.add(Fault::error("aim-without-quantity", at, message).help(
+                "name it: `aim: {QUANTITY: 0.01 m}`, and give the quantity a `unit` where it has none",
+            ));
         }
     }
     Some(list)

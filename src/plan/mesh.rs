@@ -27,7 +27,11 @@ impl Nominal {
         let ratio = (until - from) / step;
         let nearest = ratio.round();
         let steps = if (ratio - nearest).abs() < WHOLE && nearest >= 1.0 { nearest } else { ratio.ceil() };
-        #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "positive; saturates where huge")]
+        #[expect(
+            clippy::cast_possible_truncation,
+            clippy::cast_sign_loss,
+            reason = "positive; saturates where huge"
+        )]
         Nominal::Uniform { from, until, step, steps: steps as u64 }
     }
 

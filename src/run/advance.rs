@@ -12,7 +12,7 @@ use crate::arithmetic::{larger, root, smaller};
 use crate::plan::{Nominal, RunPlan};
 use crate::scheme::control::Controller;
 use crate::scheme::dense_output::{Piece, Room};
-use crate::scheme::rates::{NotFinite, Rates, checked};
+use crate::scheme::rates::{NotFinite, checked};
 use crate::scheme::step::Stepper;
 
 /// Flips at one mesh interval after which a run counts as chattering.
@@ -218,13 +218,13 @@ impl<'p> Runner<'p> {
                 None => {
                     if let Some(cut) = guide {
                         let further = target + 0.5 * (target - start);
-                        if further <= self.plan.until && self.try_step(further).is_ok() {
-                            if let Some((theta, switch)) = self.first_flip()
-                                && self.watched[switch] == cut.switch
-                            {
-                                self.cut_at(theta, switch, interval, expected, observers)?;
-                                return Ok(());
-                            }
+                        if further <= self.plan.until
+                            && self.try_step(further).is_ok()
+                            && let Some((theta, switch)) = self.first_flip()
+                            && self.watched[switch] == cut.switch
+                        {
+                            self.cut_at(theta, switch, interval, expected, observers)?;
+                            return Ok(());
                         }
                         self.ran.irregular = true;
                         self.try_step(target)?;
@@ -279,8 +279,10 @@ impl<'p> Runner<'p> {
                 h = h_now * controller.not_finite();
                 continue;
             }
-            let error =
-                self.stepper.local_error(target - self.t, &self.y, &self.y_new, tolerance, scales).unwrap_or(0.0);
+            let error = self
+                .stepper
+                .local_error(target - self.t, &self.y, &self.y_new, tolerance, scales)
+                .unwrap_or(0.0);
             if error.is_nan() || error > 1.0 {
                 self.ran.rejected.local_error += 1;
                 h = h_now * if error.is_nan() { controller.not_finite() } else { controller.rejected(error) };
@@ -472,7 +474,8 @@ impl<'p> Runner<'p> {
         if self.ran.accepted >= self.limit {
             return Err(Stop::TooManySteps { limit: self.limit, time: self.t });
         }
-        let step = Accepted { piece: &self.piece, f: &self.f, f_new: &self.f_new, modes: &self.system.modes, cut };
+        let step =
+            Accepted { piece: &self.piece, f: &self.f, f_new: &self.f_new, modes: &self.system.modes, cut };
         for observer in observers.iter_mut() {
             observer.step(&step);
         }

@@ -49,7 +49,8 @@ impl Observer for SpectrumWatch {
         if step.piece.t < due {
             return;
         }
-        while self.next <= TAKES && self.from + self.span * (self.next as f64 / TAKES as f64) <= step.piece.t {
+        while self.next <= TAKES && self.from + self.span * (self.next as f64 / TAKES as f64) <= step.piece.t
+        {
             self.next += 1;
         }
         let mut entries = vec![0.0; self.entries.len()];

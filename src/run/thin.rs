@@ -21,7 +21,13 @@ pub struct ColumnThinner {
 impl ColumnThinner {
     /// A thinner for abscissae from `from` to `until`, in increasing order.
     pub fn new(from: f64, until: f64) -> Self {
-        ColumnThinner { from, width: (until - from) / COLUMNS as f64, column: 0, kept: None, points: Vec::new() }
+        ColumnThinner {
+            from,
+            width: (until - from) / COLUMNS as f64,
+            column: 0,
+            kept: None,
+            points: Vec::new(),
+        }
     }
     /// Takes a point.
     pub fn push(&mut self, x: f64, y: f64) {

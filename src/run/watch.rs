@@ -37,6 +37,8 @@ pub struct Reading {
     pub range: f64,
     /// Largest absolute rate of change of the expression over the run.
     pub steepest: f64,
+    /// For the time of a peak: how far the highest other peak stays below it.
+    pub lead: Option<f64>,
 }
 
 /// Reads the quantities of a plan from one trajectory.
@@ -63,7 +65,8 @@ pub struct Watch {
     pub state_scales: Vec<f64>,
     /// Number of steps seen.
     pub steps: u64,
-    end: f64,
+    /// The end of the last step.
+    last: Place,
 }
 
 #[derive(Debug)]
@@ -72,10 +75,13 @@ struct Item {
     index: usize,
     measure: Measure,
     best: Option<f64>,
+    /// The second best peak.
+    rival: Option<f64>,
     place: Place,
     count: u32,
     margin: Option<f64>,
-    /// The side of the level on which the expression was last seen off it.
+    /// The side of the level on which the expression was last seen off it; for peaks, whether it last rose or
+    /// fell.
     side: f64,
 }
 
@@ -102,6 +108,7 @@ impl Watch {
                 index,
                 measure: quantity.measure,
                 best: None,
+                rival: None,
                 place: Place::default(),
                 count: 0,
                 margin: None,
@@ -124,7 +131,9 @@ impl Watch {
             Vec::new()
         } else {
             let free = graph.switches().iter().enumerate();
-            free.filter(|(i, _)| !watched.get(*i).copied().unwrap_or(false)).map(|(_, switch)| switch.on).collect()
+            free.filter(|(i, _)| !watched.get(*i).copied().unwrap_or(false))
+                .map(|(_, switch)| switch.on)
+                .collect()
         };
         let states = rates.len();
         let count = nodes.len();
@@ -145,7 +154,7 @@ impl Watch {
             steepest: vec![0.0; count],
             state_scales: vec![0.0; states],
             steps: 0,
-            end: from,
+            last: Place::default(),
         }
     }
 
@@ -163,7 +172,7 @@ impl Watch {
     pub fn see(&mut self, mut path: impl Path, modes: &[i8]) {
         let first = self.steps == 0;
         self.steps += 1;
-        self.end = path.t_new();
+        self.last.take(&mut path, 1.0, modes, self.states);
         let Watch { values, kinks, samples, kink_samples, y, .. } = self;
         for (j, theta) in SAMPLES.iter().enumerate() {
             path.state(*theta, y);
@@ -232,41 +241,68 @@ impl Watch {
     }
 
     /// The place between samples `j` and `j + 1` where `output` less `level` is zero; it differs in sign there.
-    fn locate(&mut self, path: &mut impl Path, modes: &[i8], output: usize, level: f64, a: f64, b: f64) -> f64 {
+    fn locate(
+        &mut self,
+        path: &mut impl Path,
+        modes: &[i8],
+        output: usize,
+        level: f64,
+        a: f64,
+        b: f64,
+    ) -> f64 {
         let fa = self.evaluate(path, a, modes, output) - level;
         let fb = self.evaluate(path, b, modes, output) - level;
         root::bracketed(a, fa, b, fb, |theta| self.evaluate(path, theta, modes, output) - level)
     }
 
-    /// Looks for a value above the best so far; `sign` -1 looks below.
+    /// Looks for peaks: places where the rate of change along the solution turns from rising to falling, the start
+    /// where it falls from there, and the end where it rises to there. `sign` -1 looks for troughs.
     fn see_peak(&mut self, item: &mut Item, path: &mut impl Path, modes: &[i8], sign: f64, first: bool) {
         let (value, rate) = (2 * item.index, 2 * item.index + 1);
+        if first && sign * self.samples[0][rate] <= 0.0 {
+            self.peak(item, path, modes, sign, 0.0);
+        }
         for j in 0..SAMPLES.len() {
-            let here = sign * self.samples[j][value];
-            if (j > 0 || first) && item.best.is_none_or(|best| here > sign * best) {
-                item.best = Some(self.samples[j][value]);
-                item.place.take(path, SAMPLES[j], modes, self.states);
+            let slope = sign * self.samples[j][rate];
+            let falls = slope < 0.0 && item.side > 0.0;
+            if slope != 0.0 {
+                item.side = if slope > 0.0 { 1.0 } else { -1.0 };
             }
-            if j == 0 {
+            if !falls {
                 continue;
             }
-            let before = sign * self.samples[j - 1][value];
-            let (slope_before, slope) = (sign * self.samples[j - 1][rate], sign * self.samples[j][rate]);
-            if !(slope_before > 0.0 && slope < 0.0) {
+            if j == 0 {
+                // A kink at the end of the last step.
+                self.peak(item, path, modes, sign, 0.0);
+                continue;
+            }
+            let slope_before = sign * self.samples[j - 1][rate];
+            if slope_before <= 0.0 {
+                self.peak(item, path, modes, sign, SAMPLES[j - 1]);
                 continue;
             }
             // No peak between the samples is higher than the tangents allow.
             let width = (SAMPLES[j] - SAMPLES[j - 1]) * (path.t_new() - path.t());
+            let (before, here) = (sign * self.samples[j - 1][value], sign * self.samples[j][value]);
             let roof = larger(before + width * slope_before, here - width * slope);
-            if item.best.is_some_and(|best| roof <= sign * best) {
+            let floor = if item.measure_is_time() { item.rival } else { item.best };
+            if floor.is_some_and(|floor| roof < sign * floor) {
                 continue;
             }
             let theta = self.locate(path, modes, rate, 0.0, SAMPLES[j - 1], SAMPLES[j]);
-            let top = self.evaluate(path, theta, modes, value);
-            if item.best.is_none_or(|best| sign * top >= sign * best) {
-                item.best = Some(top);
-                item.place.take(path, theta, modes, self.states);
-            }
+            self.peak(item, path, modes, sign, theta);
+        }
+    }
+
+    /// Takes down a peak at `theta`.
+    fn peak(&mut self, item: &mut Item, path: &mut impl Path, modes: &[i8], sign: f64, theta: f64) {
+        let top = self.evaluate(path, theta, modes, 2 * item.index);
+        if item.best.is_none_or(|best| sign * top > sign * best) {
+            item.rival = item.best;
+            item.best = Some(top);
+            item.place.take(path, theta, modes, self.states);
+        } else if item.rival.is_none_or(|rival| sign * top > sign * rival) {
+            item.rival = Some(top);
         }
     }
 
@@ -365,42 +401,74 @@ impl Watch {
     }
 
     /// What was read, one entry a quantity.
-    pub fn readings(&self) -> Vec<Reading> {
-        let span = self.end - self.from;
-        self.items
-            .iter()
-            .map(|item| {
-                let integral = || {
-                    let place = self.integrated.iter().position(|index| *index == item.index);
-                    place.map(|place| self.integrals[place])
-                };
-                let at_place = item.best.map(|_| item.place.clone());
-                let (value, place) = match item.measure {
-                    Measure::TimeOfHighest | Measure::TimeOfLowest => (item.best.map(|_| item.place.t), at_place),
-                    Measure::Integral => (integral(), None),
-                    Measure::Mean => (integral().map(|sum| sum / span), None),
-                    Measure::Count { .. } => (Some(f64::from(item.count)), None),
-                    _ => (item.best, at_place),
-                };
-                Reading {
-                    value,
-                    place,
-                    margin: item.margin.map(|margin| self.last_margin(item, margin)),
-                    scale: self.scales[item.index],
-                    range: self.highs[item.index] - self.lows[item.index],
-                    steepest: self.steepest[item.index],
-                }
-            })
-            .collect()
+    pub fn readings(&mut self) -> Vec<Reading> {
+        let mut items = std::mem::take(&mut self.items);
+        for item in &mut items {
+            self.close_peak(item);
+        }
+        self.items = items;
+        self.items.iter().map(|item| self.reading(item)).collect()
+    }
+
+    /// The end of the run is a peak where the expression rises to there.
+    fn close_peak(&self, item: &mut Item) {
+        let sign = match item.measure {
+            Measure::Highest | Measure::TimeOfHighest => 1.0,
+            Measure::Lowest | Measure::TimeOfLowest => -1.0,
+            _ => return,
+        };
+        if item.side < 0.0 || self.steps == 0 {
+            return;
+        }
+        let top = self.samples[4][2 * item.index];
+        if item.best.is_none_or(|best| sign * top > sign * best) {
+            item.rival = item.best;
+            item.best = Some(top);
+            item.place.clone_from(&self.last);
+        } else if item.rival.is_none_or(|rival| sign * top > sign * rival) {
+            item.rival = Some(top);
+        }
+        // Closed only once.
+        item.side = -1.0;
+    }
+
+    fn reading(&self, item: &Item) -> Reading {
+        let span = self.last.t - self.from;
+        let integral = || {
+            let place = self.integrated.iter().position(|index| *index == item.index);
+            place.map(|place| self.integrals[place])
+        };
+        let at_place = item.best.map(|_| item.place.clone());
+        let (value, place) = match item.measure {
+            Measure::TimeOfHighest | Measure::TimeOfLowest => (item.best.map(|_| item.place.t), at_place),
+            Measure::Integral => (integral(), None),
+            Measure::Mean => (integral().map(|sum| sum / span), None),
+            Measure::Count { .. } => (Some(f64::from(item.count)), None),
+            _ => (item.best, at_place),
+        };
+        Reading {
+            value,
+            place,
+            margin: item.margin.map(|margin| self.last_margin(item, margin)),
+            scale: self.scales[item.index],
+            range: self.highs[item.index] - self.lows[item.index],
+            steepest: self.steepest[item.index],
+            lead: item.best.zip(item.rival).map(|(best, rival)| (best - rival).abs()),
+        }
     }
 
     /// The margin with the distance at the end of the run taken in.
     fn last_margin(&self, item: &Item, margin: f64) -> f64 {
-        let level = match item.measure {
-            Measure::TimeWhen { level, .. } | Measure::Count { level, .. } => level,
-            _ => return margin,
+        let (Measure::TimeWhen { level, .. } | Measure::Count { level, .. }) = item.measure else {
+            return margin;
         };
         smaller(margin, (self.samples[4][2 * item.index] - level).abs())
+    }
+}
+
+impl Item {
+    fn measure_is_time(&self) -> bool {
+        matches!(self.measure, Measure::TimeOfHighest | Measure::TimeOfLowest)
     }
 }
 

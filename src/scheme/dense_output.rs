@@ -107,7 +107,15 @@ impl Piece {
     }
 
     /// Makes the interpolant that belongs to the scheme, from the stages of its last step.
-    fn matched(&mut self, stepper: &Stepper, weights: &[Vec<f64>], t: f64, y: &[f64], t_new: f64, y_new: &[f64]) {
+    fn matched(
+        &mut self,
+        stepper: &Stepper,
+        weights: &[Vec<f64>],
+        t: f64,
+        y: &[f64],
+        t_new: f64,
+        y_new: &[f64],
+    ) {
         let n = self.states;
         let h = t_new - t;
         let k = stepper.stages();
@@ -139,7 +147,13 @@ impl Piece {
     /// # Source
     /// Enright, Jackson, Norsett & Thomsen (1986), ACM TOMS 12, 193-218 ("bootstrapping"); Hairer, Norsett &
     /// Wanner I, sect. II.6.
-    fn lift<R: Rates>(&mut self, rates: &mut R, f: &[f64], f_new: &[f64], room: &mut Room) -> Result<(), NotFinite> {
+    fn lift<R: Rates>(
+        &mut self,
+        rates: &mut R,
+        f: &[f64],
+        f_new: &[f64],
+        room: &mut Room,
+    ) -> Result<(), NotFinite> {
         let n = self.states;
         let h = self.h();
         for (theta, out) in [(1.0 / 3.0, &mut room.first), (2.0 / 3.0, &mut room.second)] {

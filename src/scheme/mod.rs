@@ -2,14 +2,14 @@
 
 pub mod control;
 pub mod dense_output;
-pub mod rates;
-pub mod step;
 mod drawing;
 mod explicit;
 mod list;
 pub mod order;
+pub mod rates;
 mod region;
 pub mod stability;
+pub mod step;
 mod sturm;
 mod tableau;
 mod tree;

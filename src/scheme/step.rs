@@ -64,7 +64,10 @@ impl Stepper {
         for i in 1..stages {
             weigh(&self.k, n, &tableau.a[i], y, h, &mut self.y_stage);
             let c = tableau.c[i];
-            #[expect(clippy::float_cmp, reason = "the node 1 is exact, and there the time is that of the mesh")]
+            #[expect(
+                clippy::float_cmp,
+                reason = "the node 1 is exact, and there the time is that of the mesh"
+            )]
             let t_stage = if c == 1.0 { t_new } else { t + c * h };
             checked(rates, t_stage, &self.y_stage, &mut self.k[i * n..(i + 1) * n])?;
         }
@@ -86,7 +89,14 @@ impl Stepper {
     /// The local error estimate of the last step in the maximum norm, each state over
     /// `tolerance * (max(|y|, |y_new|) + scale)`; at most 1 is within tolerance. `None` for a scheme without
     /// embedded weights.
-    pub fn local_error(&self, h: f64, y: &[f64], y_new: &[f64], tolerance: f64, scales: &[f64]) -> Option<f64> {
+    pub fn local_error(
+        &self,
+        h: f64,
+        y: &[f64],
+        y_new: &[f64],
+        tolerance: f64,
+        scales: &[f64],
+    ) -> Option<f64> {
         let weights = self.scheme.tableau.error.as_ref()?;
         let n = self.states;
         let mut largest = 0.0;

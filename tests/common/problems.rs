@@ -25,7 +25,13 @@ pub fn problem(i: u64) -> Problem {
     match r.below(9) {
         0 => {
             let (a, y0) = (r.between(-1.5, 0.6), r.between(0.5, 3.0));
-            make("exponential", r.between(1.0, 5.0), 1.0, format!("states: {{x: {y0}}}\nrates: {{x: \"{a}*x\"}}\nexact: {{x: \"{y0}*exp({a}*t)\"}}"), &[])
+            make(
+                "exponential",
+                r.between(1.0, 5.0),
+                1.0,
+                format!("states: {{x: {y0}}}\nrates: {{x: \"{a}*x\"}}\nexact: {{x: \"{y0}*exp({a}*t)\"}}"),
+                &[],
+            )
         }
         1 => {
             let (rate, k, y0) = (r.between(0.4, 2.0), r.between(1.0, 20.0), r.between(0.1, 0.5));
@@ -33,7 +39,9 @@ pub fn problem(i: u64) -> Problem {
                 "logistic",
                 r.between(3.0, 10.0),
                 1.0 / rate,
-                format!("states: {{x: {y0}}}\nrates: {{x: \"{rate}*x*(1-x/{k})\"}}\nexact: {{x: \"{k}/(1+({k}/{y0}-1)*exp(-{rate}*t))\"}}"),
+                format!(
+                    "states: {{x: {y0}}}\nrates: {{x: \"{rate}*x*(1-x/{k})\"}}\nexact: {{x: \"{k}/(1+({k}/{y0}-1)*exp(-{rate}*t))\"}}"
+                ),
                 &[&format!("time when x rises through {}", 0.8 * y0 + 0.1 * k)],
             )
         }
@@ -47,7 +55,13 @@ pub fn problem(i: u64) -> Problem {
                 format!(
                     "states: {{x: {x0}, v: 0}}\nrates: {{x: v, v: \"-{w}^2*x-2*{d}*v\"}}\nexact:\n  x: \"{x0}*exp(-{d}*t)*(cos({wd}*t)+{d}/{wd}*sin({wd}*t))\"\n  v: \"-{x0}*exp(-{d}*t)*{w}^2/{wd}*sin({wd}*t)\""
                 ),
-                &["time when x falls through 0", "lowest x", "time of lowest x", "highest v", "count of x crosses 0.01"],
+                &[
+                    "time when x falls through 0",
+                    "lowest x",
+                    "time of lowest x",
+                    "highest v",
+                    "count of x crosses 0.01",
+                ],
             )
         }
         3 => {
@@ -56,13 +70,21 @@ pub fn problem(i: u64) -> Problem {
                 "relaxation toward a wave",
                 r.between(3.0, 9.0),
                 1.0 / (a + w),
-                format!("states: {{x: {y0}}}\nrates: {{x: \"-{a}*(x-cos({w}*t))-{w}*sin({w}*t)\"}}\nexact: {{x: \"cos({w}*t)+({y0}-1)*exp(-{a}*t)\"}}"),
+                format!(
+                    "states: {{x: {y0}}}\nrates: {{x: \"-{a}*(x-cos({w}*t))-{w}*sin({w}*t)\"}}\nexact: {{x: \"cos({w}*t)+({y0}-1)*exp(-{a}*t)\"}}"
+                ),
                 &["lowest x", "time of lowest x"],
             )
         }
         4 => {
             let y0 = r.between(0.3, 3.0);
-            make("Riccati", r.between(2.0, 12.0), 1.0 / y0, format!("states: {{x: {y0}}}\nrates: {{x: \"-x^2\"}}\nexact: {{x: \"1/(1/{y0}+t)\"}}"), &[])
+            make(
+                "Riccati",
+                r.between(2.0, 12.0),
+                1.0 / y0,
+                format!("states: {{x: {y0}}}\nrates: {{x: \"-x^2\"}}\nexact: {{x: \"1/(1/{y0}+t)\"}}"),
+                &[],
+            )
         }
         5 => {
             let (a, y0) = (r.between(0.4, 1.6), r.between(0.5, 2.0));
@@ -70,7 +92,9 @@ pub fn problem(i: u64) -> Problem {
                 "periodic growth",
                 r.between(4.0, 14.0),
                 1.0,
-                format!("states: {{x: {y0}}}\nrates: {{x: \"{a}*x*cos(t)\"}}\nexact: {{x: \"{y0}*exp({a}*sin(t))\"}}"),
+                format!(
+                    "states: {{x: {y0}}}\nrates: {{x: \"{a}*x*cos(t)\"}}\nexact: {{x: \"{y0}*exp({a}*sin(t))\"}}"
+                ),
                 &["lowest x", "time of highest x", &format!("time when x falls through {y0}")],
             )
         }
@@ -80,7 +104,9 @@ pub fn problem(i: u64) -> Problem {
                 "Bernoulli",
                 r.between(3.0, 8.0),
                 1.0,
-                format!("states: {{x: {y0}}}\nrates: {{x: \"x-x^3\"}}\nexact: {{x: \"{y0}*exp(t)/sqrt(1+{y0}^2*(exp(2*t)-1))\"}}"),
+                format!(
+                    "states: {{x: {y0}}}\nrates: {{x: \"x-x^3\"}}\nexact: {{x: \"{y0}*exp(t)/sqrt(1+{y0}^2*(exp(2*t)-1))\"}}"
+                ),
                 &["time when x rises through 0.6"],
             )
         }

@@ -16,7 +16,8 @@ impl Random {
     /// The next 64 bits. Source of the mixing: Steele, Lea & Flood (2014), OOPSLA, "SplitMix".
     pub fn bits(&mut self) -> u64 {
         self.count += 1;
-        let mut z = self.key.wrapping_mul(0xD1B5_4A32_D192_ED03) ^ self.count.wrapping_mul(0x9E37_79B9_7F4A_7C15);
+        let mut z =
+            self.key.wrapping_mul(0xD1B5_4A32_D192_ED03) ^ self.count.wrapping_mul(0x9E37_79B9_7F4A_7C15);
         z = (z ^ (z >> 30)).wrapping_mul(0xBF58_476D_1CE4_E5B9);
         z = (z ^ (z >> 27)).wrapping_mul(0x94D0_49BB_1331_11EB);
         z ^ (z >> 31)

@@ -6,7 +6,19 @@ use std::path::{Path, PathBuf};
 
 /// The folders of `src` in the order of the data flow: each may use those before it.
 const FLOW: [&str; 13] = [
-    "arithmetic", "fault", "unit", "study", "model", "scheme", "plan", "run", "bound", "figure", "report", "record", "cli",
+    "arithmetic",
+    "fault",
+    "unit",
+    "study",
+    "model",
+    "scheme",
+    "plan",
+    "run",
+    "bound",
+    "figure",
+    "report",
+    "record",
+    "cli",
 ];
 
 /// A file should hold one idea.
@@ -35,7 +47,9 @@ fn no_folder_uses_one_below_it() {
             // Comments may name what a folder does not know.
             for line in text.lines().filter(|line| !line.trim_start().starts_with("//")) {
                 for below in &FLOW[i + 1..] {
-                    if line.contains(&format!("crate::{below}::")) || line.contains(&format!("crate::{below};")) {
+                    if line.contains(&format!("crate::{below}::"))
+                        || line.contains(&format!("crate::{below};"))
+                    {
                         wrong.push(format!("{}: {}", path.display(), line.trim()));
                     }
                 }
@@ -49,7 +63,11 @@ fn no_folder_uses_one_below_it() {
 fn model_and_scheme_do_not_know_each_other() {
     for path in rust_files(&root().join("src/scheme")) {
         let text = std::fs::read_to_string(&path).unwrap();
-        assert!(!text.contains("use crate::model") && !text.contains("use crate::study"), "{}", path.display());
+        assert!(
+            !text.contains("use crate::model") && !text.contains("use crate::study"),
+            "{}",
+            path.display()
+        );
     }
 }
 
@@ -74,7 +92,16 @@ fn every_file_says_what_it_is_and_holds_one_idea() {
 #[test]
 fn the_top_level_holds_what_it_should() {
     let allowed: BTreeSet<&str> = [
-        "Cargo.toml", "Cargo.lock", "README.md", "DEVELOPERS.md", "src", "templates", "studies", "tests", "out", "target",
+        "Cargo.toml",
+        "Cargo.lock",
+        "README.md",
+        "DEVELOPERS.md",
+        "src",
+        "templates",
+        "studies",
+        "tests",
+        "out",
+        "target",
     ]
     .into();
     for entry in std::fs::read_dir(root()).unwrap() {

@@ -2,4 +2,5 @@
 
 #[path = "../common/mod.rs"]
 mod common;
+mod hidden;
 mod orders;

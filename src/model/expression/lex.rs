@@ -74,16 +74,20 @@ pub(super) fn lex(text: &Text, faults: &mut Faults) -> Option<Vec<Token>> {
             }
         };
         if let (Some(last), Kind::Number | Kind::Name | Kind::Open) = (tokens.last(), kind)
-            && (matches!(last.kind, Kind::Number | Kind::Close) || (last.kind == Kind::Name && kind != Kind::Open))
+            && (matches!(last.kind, Kind::Number | Kind::Close)
+                || (last.kind == Kind::Name && kind != Kind::Open))
         {
             faults.add(
-                Fault::error("missing-operator", text.part(last.start, i), "an operator is missing between two parts")
-                    .help("write products with `*`: `2*x`, not `2x` or `2 x`"),
+                Fault::error(
+                    "missing-operator",
+                    text.part(last.start, i),
+                    "an operator is missing between two parts",
+                )
+                .help("write products with `*`: `2*x`, not `2x` or `2 x`"),
             );
             return None;
         }
-        let mut token =
-            Token { kind, start, end: i, level: 0, open: opens.last().copied(), close: 0 };
+        let mut token = Token { kind, start, end: i, level: 0, open: opens.last().copied(), close: 0 };
         if kind == Kind::Close {
             let Some(open) = opens.pop() else {
                 faults.add(Fault::error(
@@ -104,7 +108,11 @@ pub(super) fn lex(text: &Text, faults: &mut Faults) -> Option<Vec<Token>> {
     }
     if let Some(open) = opens.last() {
         let token = tokens[*open];
-        faults.add(Fault::error("parenthesis", text.part(token.start, token.end), "this parenthesis is not closed"));
+        faults.add(Fault::error(
+            "parenthesis",
+            text.part(token.start, token.end),
+            "this parenthesis is not closed",
+        ));
         return None;
     }
     Some(tokens)
@@ -145,9 +153,12 @@ fn foreign(text: &Text, source: &str, at: usize, faults: &mut Faults) {
         '\u{2212}' | '\u{2013}' => "write the minus sign as `-`",
         '\u{b2}' | '\u{b3}' => "write powers with `^`: `x^2`",
         '\'' => "a prime is no part of a name; the left side of a rate is the name of its state",
-        _ => "an expression is made of numbers, names of ASCII letters, digits and `_`, functions, + - * / % ^ ( ) and commas",
+        _ => {
+            "an expression is made of numbers, names of ASCII letters, digits and `_`, functions, + - * / % ^ ( ) and commas"
+        }
     };
     faults.add(
-        Fault::error("foreign-character", place, format!("`{character}` is no part of an expression")).help(help),
+        Fault::error("foreign-character", place, format!("`{character}` is no part of an expression"))
+            .help(help),
     );
 }

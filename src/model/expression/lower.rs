@@ -34,8 +34,12 @@ pub fn lower(text: &Text, graph: &mut Graph, scope: &dyn Scope, faults: &mut Fau
     }
     if source.len() > LONGEST {
         faults.add(
-            Fault::error("long-expression", text.part(0, 40), format!("this expression has {} bytes", source.len()))
-                .help(format!("at most {LONGEST} are read: split it into derived quantities")),
+            Fault::error(
+                "long-expression",
+                text.part(0, 40),
+                format!("this expression has {} bytes", source.len()),
+            )
+            .help(format!("at most {LONGEST} are read: split it into derived quantities")),
         );
         return None;
     }
@@ -81,8 +85,16 @@ pub fn lower(text: &Text, graph: &mut Graph, scope: &dyn Scope, faults: &mut Fau
                 let (first, last) = call_range(source, &tokens, name, arguments.first()?.1)?;
                 let at = text.part(tokens[first].start, tokens[last].end);
                 let nodes: Vec<NodeId> = arguments.iter().map(|(node, ..)| *node).collect();
-                let node = function(name, count, &nodes, text.part(tokens[first].start, tokens[first].end), at, graph, faults)
-                    .unwrap_or_else(|| graph.constant(1.0));
+                let node = function(
+                    name,
+                    count,
+                    &nodes,
+                    text.part(tokens[first].start, tokens[first].end),
+                    at,
+                    graph,
+                    faults,
+                )
+                .unwrap_or_else(|| graph.constant(1.0));
                 (node, first, last)
             }
             Parsed::LParen | Parsed::RParen | Parsed::Comma => return None,
@@ -112,9 +124,11 @@ fn parse(text: &Text, faults: &mut Faults) -> Option<Vec<Parsed>> {
             Fault::error("syntax", text.part(end.saturating_sub(1), end), "something is missing at the end")
                 .help("an operator needs a value on its right")
         }
-        Ok(Err(tokenizer::ParseError::MissingRParen(_))) => {
-            Fault::error("parenthesis", text.part(end.saturating_sub(1), end), "a closing parenthesis is missing")
-        }
+        Ok(Err(tokenizer::ParseError::MissingRParen(_))) => Fault::error(
+            "parenthesis",
+            text.part(end.saturating_sub(1), end),
+            "a closing parenthesis is missing",
+        ),
         Ok(Ok(Err(_))) | Err(_) => Fault::error("syntax", text.at, "the expression cannot be read"),
     };
     faults.add(fault);
@@ -161,15 +175,29 @@ fn check_number(text: &Text, token: &Token, number: f64, faults: &mut Faults) {
     let digits = &text.value[token.start..token.end];
     let at = text.part(token.start, token.end);
     if !number.is_finite() {
-        faults.add(
-            Fault::error("number-too-large", at, format!("`{digits}` is beyond the largest number, about 1.8e308")),
-        );
-    } else if number == 0.0 && digits.split(['e', 'E']).next().is_some_and(|m| m.contains(|c| ('1'..='9').contains(&c))) {
-        faults.add(Fault::error("number-too-small", at, format!("`{digits}` is below the smallest number, about 5e-324")));
+        faults.add(Fault::error(
+            "number-too-large",
+            at,
+            format!("`{digits}` is beyond the largest number, about 1.8e308"),
+        ));
+    } else if number == 0.0
+        && digits.split(['e', 'E']).next().is_some_and(|m| m.contains(|c| ('1'..='9').contains(&c)))
+    {
+        faults.add(Fault::error(
+            "number-too-small",
+            at,
+            format!("`{digits}` is below the smallest number, about 5e-324"),
+        ));
     }
 }
 
-fn look_up(name: &str, at: Span, graph: &mut Graph, scope: &dyn Scope, faults: &mut Faults) -> Option<NodeId> {
+fn look_up(
+    name: &str,
+    at: Span,
+    graph: &mut Graph,
+    scope: &dyn Scope,
+    faults: &mut Faults,
+) -> Option<NodeId> {
     if let Some(node) = scope.look_up(graph, name) {
         return Some(node);
     }
@@ -219,7 +247,9 @@ fn function(
             (_, Some(near)) => format!("did you mean `{near}`?"),
             _ => "products are written with `*`: `a*(b + c)`".to_owned(),
         };
-        faults.add(Fault::error("unknown-function", at_name, format!("there is no function `{name}`")).help(help));
+        faults.add(
+            Fault::error("unknown-function", at_name, format!("there is no function `{name}`")).help(help),
+        );
         return None;
     };
     if count < *least || count > *most {

@@ -2,9 +2,9 @@
 //!
 //! `meval`'s own evaluation is not used: it calls the system's mathematics, whose bits differ between machines.
 
+mod functions;
 mod lex;
 mod lower;
-mod functions;
 
 pub use functions::{FUNCTIONS, is_function};
 pub use lower::{Scope, lower};

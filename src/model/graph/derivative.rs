@@ -74,7 +74,7 @@ impl Graph {
     fn step(&mut self, id: NodeId, wrt: Wrt, done: &BTreeMap<NodeId, NodeId>) -> NodeId {
         let zero = self.constant(0.0);
         match self.node(id) {
-            Node::Constant(_) | Node::Parameter(_) => zero,
+            Node::Constant(_) | Node::Parameter(_) | Node::Sign { .. } => zero,
             Node::Time => {
                 if wrt == Wrt::Time {
                     self.constant(1.0)
@@ -108,7 +108,6 @@ impl Graph {
                 let outer = self.times(factor, lower);
                 self.times(outer, da)
             }
-            Node::Sign { .. } => zero,
             Node::Pick { on, positive, negative, switch } => {
                 let (p, n) = (done[&positive], done[&negative]);
                 if p == n {
@@ -250,7 +249,8 @@ impl Graph {
             }
             Unary::Asinh | Unary::Acosh => {
                 let second = square(self, a);
-                let under = if function == Unary::Asinh { self.plus(second, one) } else { self.minus(second, one) };
+                let under =
+                    if function == Unary::Asinh { self.plus(second, one) } else { self.minus(second, one) };
                 let root = self.unary(Unary::Sqrt, under);
                 self.over(da, root)
             }

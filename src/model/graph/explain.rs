@@ -50,7 +50,8 @@ pub fn explain_not_finite(
             if value.is_finite() {
                 continue;
             }
-            let inputs: Vec<f64> = graph.node(*id).inputs().into_iter().flatten().map(|input| of(input, &values)).collect();
+            let inputs: Vec<f64> =
+                graph.node(*id).inputs().into_iter().flatten().map(|input| of(input, &values)).collect();
             if inputs.iter().any(|input| !input.is_finite()) {
                 continue;
             }

@@ -193,7 +193,10 @@ impl Graph {
         self.intern(Node::State(i as u32))
     }
     /// Parameter `i`.
-    #[expect(clippy::cast_possible_truncation, reason = "the size of a study limits the number of parameters")]
+    #[expect(
+        clippy::cast_possible_truncation,
+        reason = "the size of a study limits the number of parameters"
+    )]
     pub fn parameter(&mut self, i: usize) -> NodeId {
         self.intern(Node::Parameter(i as u32))
     }
@@ -229,7 +232,11 @@ impl Graph {
             && exponent.fract() == 0.0
             && (1.0..=64.0).contains(&exponent.abs())
         {
-            #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "whole, from 1 to 64")]
+            #[expect(
+                clippy::cast_possible_truncation,
+                clippy::cast_sign_loss,
+                reason = "whole, from 1 to 64"
+            )]
             let n = exponent.abs() as u32;
             let folded = self.constant_value(a).map(|x| power(x, n)).filter(|value| value.is_finite());
             let whole = match folded {
@@ -256,7 +263,10 @@ impl Graph {
             self.switches.push(Switch { on, at });
             self.switches.len() - 1
         });
-        #[expect(clippy::cast_possible_truncation, reason = "the size of a study limits the number of switches")]
+        #[expect(
+            clippy::cast_possible_truncation,
+            reason = "the size of a study limits the number of switches"
+        )]
         let place = place as u32;
         place
     }
