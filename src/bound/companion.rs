@@ -21,11 +21,11 @@ use crate::scheme::step::Stepper;
 use crate::scheme::{self, Scheme};
 
 /// Steps of the companion in each step of the run.
-pub const PARTS: usize = 2;
+pub(super) const PARTS: usize = 2;
 
 /// Follows a run and solves for its error.
 #[derive(Debug)]
-pub struct Follower {
+pub(super) struct Follower {
     system: System,
     stepper: Stepper,
     e: Vec<f64>,
@@ -86,7 +86,7 @@ fn companion_scheme() -> Option<&'static Scheme> {
 
 impl Follower {
     /// A follower of a run; `None` where the scheme of the companion is not known.
-    pub fn new(plan: &RunPlan, watch: Watch, samplers: Vec<Sampler>) -> Option<Self> {
+    pub(super) fn new(plan: &RunPlan, watch: Watch, samplers: Vec<Sampler>) -> Option<Self> {
         let n = plan.start.len();
         let on: Vec<NodeId> = plan.graph.switches().iter().map(|switch| switch.on).collect();
         Some(Follower {
@@ -110,7 +110,7 @@ impl Follower {
     }
 
     /// What it cost.
-    pub fn cost(&self) -> Companion {
+    pub(super) fn cost(&self) -> Companion {
         Companion { steps: self.steps, evaluations: self.system.evaluations }
     }
 }

@@ -9,7 +9,7 @@ use crate::run::{Accepted, Flip, Observer};
 
 /// A jump that was found: which state's rate, when, and how much it may move that state.
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Rough {
+pub(super) struct Rough {
     /// Index of the state.
     pub state: usize,
     /// A time inside the step.
@@ -20,7 +20,7 @@ pub struct Rough {
 
 /// Looks at the rates of the finest mesh.
 #[derive(Debug)]
-pub struct RoughWatch {
+pub(super) struct RoughWatch {
     states: usize,
     /// The rates at up to five equally spaced points.
     rows: Vec<Vec<f64>>,
@@ -39,7 +39,7 @@ const NOISE: f64 = 64.0;
 
 impl RoughWatch {
     /// A watch for so many states.
-    pub fn new(states: usize) -> Self {
+    pub(super) fn new(states: usize) -> Self {
         RoughWatch { states, rows: vec![vec![0.0; states]; 5], filled: 0, h: 0.0, worst: vec![None; states] }
     }
 

@@ -28,7 +28,7 @@ pub fn verdict(value: f64, bound: Option<f64>, relation: Relation, limit: f64) -
 }
 
 /// What came of a criterion on `quantity`.
-pub fn decide(entry: &CriterionEntry, quantity: &Quantity) -> CriterionOutcome {
+pub(super) fn decide(entry: &CriterionEntry, quantity: &Quantity) -> CriterionOutcome {
     let limit = entry.limit.number;
     let (verdict, margin) = match quantity.value {
         Some(value) => {

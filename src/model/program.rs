@@ -142,7 +142,7 @@ impl Program {
         for instruction in &self.instructions {
             match *instruction {
                 Instruction::Unary(function, out, a) => {
-                    r[out as usize] = apply_unary(function, r[a as usize])
+                    r[out as usize] = apply_unary(function, r[a as usize]);
                 }
                 Instruction::Binary(operation, out, a, b) => {
                     r[out as usize] = apply(operation, r[a as usize], r[b as usize]);

@@ -1,6 +1,22 @@
 //! The coverage study: how often bounds hold, and how tight they are, over random smooth problems whose solution
 //! is known. Prints the table of DEVELOPERS.md. `cargo bench --bench coverage -- 4000` takes so many problems.
 
+#![allow(
+    unreachable_pub,
+    clippy::disallowed_methods,
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    clippy::panic,
+    clippy::print_stdout,
+    clippy::unwrap_used,
+    clippy::expect_used,
+    clippy::doc_markdown,
+    clippy::format_push_string,
+    missing_docs,
+    dead_code,
+    reason = "a test: truths come from the standard library, failures are panics"
+)]
+
 #[path = "../common/mod.rs"]
 mod common;
 

@@ -22,7 +22,7 @@ pub struct Problem {
 /// Problem number `i`.
 pub fn problem(i: u64) -> Problem {
     let mut r = Random::new(i);
-    match r.below(9) {
+    match r.below(14) {
         0 => {
             let (a, y0) = (r.between(-1.5, 0.6), r.between(0.5, 3.0));
             make(
@@ -121,6 +121,77 @@ pub fn problem(i: u64) -> Problem {
                     "states: {{x: 0, y: 1}}\nderived: {{X: \"sin({w}*t)\", Y: \"exp(-{k}*t)+0.5*sin(t)\"}}\nrates:\n  x: \"{w}*cos({w}*t)+{c}*(x-X)+{b}*sin(y-Y)+0.3*(x-X)*(y-Y)\"\n  y: \"-{k}*exp(-{k}*t)+0.5*cos(t)-0.5*(y-Y)+{b}*(x-X)\"\nexact: {{x: \"sin({w}*t)\", y: \"exp(-{k}*t)+0.5*sin(t)\"}}"
                 ),
                 &["time of highest x", "lowest x", "highest x*y", "mean y", "time when y falls through 0.5"],
+            )
+        }
+        8 => {
+            // A feed against a loss that turns its sign with the state: a kink of the rate where x = 0.
+            let (k, a) = (r.between(0.5, 2.0), r.between(0.4, 1.5));
+            let y0 = -r.between(0.2, 0.8) * k / a;
+            let turn = format!("(ln({k}/{a}/({y0}+{k}/{a}))/{a})");
+            let before = format!("(-{k}/{a}+({y0}+{k}/{a})*exp({a}*min(t,{turn})))");
+            let after = format!("({k}/{a}*(1-exp(-{a}*max(t-{turn},0))))");
+            make(
+                "kink at a level",
+                r.between(3.0, 8.0),
+                1.0 / a,
+                format!("states: {{x: {y0:?}}}\nrates: {{x: \"{k}-{a}*abs(x)\"}}\nexact: {{x: \"{before}+{after}\"}}"),
+                &["time when x rises through 0", &format!("time when x rises through {}", 0.4 * k / a)],
+            )
+        }
+        9 => {
+            // A shot upward against quadratic drag: tan on the way up, tanh on the way down.
+            let (vt, v0) = (r.between(10.0, 40.0), r.between(8.0, 40.0));
+            let turn = format!("({vt}/9.81*atan({v0}/{vt}))");
+            let up = format!("({vt}*tan(max(atan({v0}/{vt})-9.81*t/{vt},0)))");
+            let down = format!("({vt}*tanh(9.81*max(t-{turn},0)/{vt}))");
+            make(
+                "shot against drag",
+                r.between(2.0, 8.0),
+                vt / 9.81,
+                format!("states: {{x: {v0}}}\nrates: {{x: \"-9.81*(1+x*abs(x)/{vt}^2)\"}}\nexact: {{x: \"{up}-{down}\"}}"),
+                &["time when x falls through 0", "lowest x", "integral of abs(x)"],
+            )
+        }
+        10 => {
+            // A source that is switched on.
+            let (k, size, on) = (r.between(0.3, 2.0), r.between(0.2, 3.0), r.between(0.4, 2.0));
+            let after = format!("max(t-{on},0)");
+            make(
+                "jump in time",
+                r.between(3.0, 6.0),
+                1.0 / k,
+                format!(
+                    "states: {{x: 1}}\nrates: {{x: \"-{k}*x+{size}*(1+signum(t-{on}))/2\"}}\nexact: {{x: \"exp(-{k}*t)+{size}/{k}*(1-exp(-{k}*{after}))\"}}"
+                ),
+                &["lowest x", "time of lowest x"],
+            )
+        }
+        11 => {
+            // A fill at constant speed, then a relaxation.
+            let (a, b) = (r.between(0.2, 0.8), r.between(1.2, 3.0));
+            let turn = format!("(({b}-{a})/{a})");
+            make(
+                "saturated fill",
+                r.between(4.0, 14.0),
+                1.0,
+                format!(
+                    "states: {{x: 0, y: 1}}\nrates: {{x: \"min({a},{b}-x)\", y: \"-y*x\"}}\nexact:\n  x: \"{a}*min(t,{turn})+{a}*(1-exp(-max(t-{turn},0)))\"\n  y: \"exp(-({a}*min(t,{turn})^2/2+{b}*max(t-{turn},0)-{a}*(1-exp(-max(t-{turn},0)))))\""
+                ),
+                &[&format!("time when x rises through {}", b - 0.5 * a), "integral of y", "final y"],
+            )
+        }
+        12 => {
+            // The speed halves when a level is reached; a second state follows.
+            let level = r.between(0.5, 2.0);
+            let (before, after) = (format!("min(t,{level})"), format!("max(t-{level},0)"));
+            make(
+                "jump at a level",
+                level + r.between(1.0, 5.0),
+                1.0,
+                format!(
+                    "states: {{z: 0, x: 0}}\nrates: {{z: \"(3-signum(z-{level}))/4\", x: \"z-x\"}}\nexact:\n  z: \"{before}+{after}/2\"\n  x: \"({before}-1+exp(-{before}))*exp(-{after})+({level}-1/2)*(1-exp(-{after}))+{after}/2\""
+                ),
+                &["final z", &format!("time when z rises through {}", level + 0.3)],
             )
         }
         _ => {
