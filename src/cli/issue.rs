@@ -96,7 +96,8 @@ pub(super) fn issue(asked: &Issue, console: &Console) -> Status {
         jobs,
         settings: Settings { templates: asked.templates.clone(), limit: asked.limit.get() },
     };
-    let outcomes = match all(&studies, &options, &Progress::new(console, asked.quiet)) {
+    let progress = Progress::new(console, asked.quiet);
+    let outcomes = match all(&studies, jobs, &progress, &|found, doing| issue_one(found, &options, doing)) {
         Ok(outcomes) => outcomes,
         Err(failure) => {
             console.failure(&failure);
@@ -119,20 +120,21 @@ pub(super) fn issue(asked: &Issue, console: &Console) -> Status {
     status
 }
 
-/// Issues all studies, `jobs` at a time; the outcomes in the order of the studies.
+/// Does `issue_one` with all studies, `jobs` at a time; the outcomes in the order of the studies.
 fn all(
     studies: &[Found],
-    options: &Options,
+    jobs: usize,
     progress: &Progress<'_>,
+    issue_one: &(dyn Fn(&Found, &dyn Fn(&str)) -> Result<Issued, IssueError> + Sync),
 ) -> Result<Vec<Result<Issued, IssueError>>, Failure> {
     let pool = rayon::ThreadPoolBuilder::new()
-        .num_threads(options.jobs)
+        .num_threads(jobs)
         .build()
         .map_err(|cause| Failure::new("cannot start threads", std::io::Error::other(cause)))?;
     let one = |found: &Found| {
         let started = Instant::now();
         let line = progress.begin(&found.shown);
-        let outcome = guard(|| issue_one(found, options, &|what| line.doing(what)));
+        let outcome = guard(|| issue_one(found, &|what| line.doing(what)));
         let outcome = outcome.unwrap_or_else(|defect| Err(IssueError::Defect(defect)));
         line.end(started.elapsed(), outcome.is_ok());
         outcome
@@ -150,20 +152,10 @@ pub fn issue_one(found: &Found, options: &Options, progress: &dyn Fn(&str)) -> R
     let study = FileDigest::of(Was::Read, file_name(&found.path), text.as_bytes());
     let executed = stages::execute(found, text, &options.settings, progress)?;
     progress("writing the report");
-    let mut files = data_files(&executed.outcome)?;
-    let mut digests = executed.read.clone();
-    digests.push(study.clone());
-    digests.extend(files.iter().map(|file| FileDigest::of(Was::Written, &file.path, &file.bytes)));
-    digests.sort();
-    let report = stages::report(&executed, &digests, &options.settings)?;
-    digests.push(FileDigest::of(Was::Written, REPORT, report.as_bytes()));
-    let record = record(&executed, &study.sha256, &digests)?;
+    let mut files =
+        compose(&executed, &study, &|digests| stages::report(&executed, digests, &options.settings))?;
     let timing = Timing { taken: started.elapsed(), jobs: options.jobs };
-    for (path, bytes) in
-        [("record.json", record), (REPORT, report.into_bytes()), (Timing::FILE, timing.text().into_bytes())]
-    {
-        files.push(NewFile { path: path.to_owned(), bytes });
-    }
+    files.push(NewFile { path: Timing::FILE.to_owned(), bytes: timing.text().into_bytes() });
     let place = options.out.join(&found.name);
     write::folder(&place, &files)?;
     Ok(Issued {
@@ -173,6 +165,26 @@ pub fn issue_one(found: &Found, options: &Options, progress: &dyn Fn(&str)) -> R
         faults: executed.faults,
         sources: executed.sources,
     })
+}
+
+/// The data files, the report and the record. The report knows the digests of all but itself and the record, the
+/// record knows the digests of all but itself.
+fn compose(
+    executed: &Executed,
+    study: &FileDigest,
+    report: &dyn Fn(&[FileDigest]) -> Result<String, IssueError>,
+) -> Result<Vec<NewFile>, IssueError> {
+    let mut files = data_files(&executed.outcome)?;
+    let mut digests = executed.read.clone();
+    digests.push(study.clone());
+    digests.extend(files.iter().map(|file| FileDigest::of(Was::Written, &file.path, &file.bytes)));
+    digests.sort();
+    let report = report(&digests)?;
+    digests.push(FileDigest::of(Was::Written, REPORT, report.as_bytes()));
+    let record = record(executed, &study.sha256, &digests)?;
+    files.push(NewFile { path: "record.json".to_owned(), bytes: record });
+    files.push(NewFile { path: REPORT.to_owned(), bytes: report.into_bytes() });
+    Ok(files)
 }
 
 const REPORT: &str = "report.html";
@@ -236,6 +248,83 @@ fn write_register(out: &Path) -> Result<(), Failure> {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::bound::{RowColumn, Rows};
+    use crate::cli::console::Console;
+    use crate::record::example;
+
+    fn executed() -> Executed {
+        let mut sources = Sources::default();
+        sources.add("shaft.md", "```model shaft\nx: 1\n```\n");
+        let mut outcome = example::outcome();
+        outcome.runs[0].rows = Some(Rows {
+            every: "1 s".to_owned(),
+            columns: vec![RowColumn {
+                name: "z".to_owned(),
+                unit: None,
+                values: vec![0.5],
+                bounds: vec![None],
+                grades: vec![Grade::Unbounded],
+            }],
+            times: vec![0.0],
+        });
+        Executed {
+            study: example::study(),
+            sources,
+            models: example::models(),
+            outcome,
+            faults: Faults::new(),
+            read: vec![FileDigest::of(Was::Read, "templates/report.html", b"")],
+        }
+    }
+
+    #[test]
+    fn the_report_knows_all_digests_but_its_own_and_the_record_all_but_its_own() {
+        let study = FileDigest::of(Was::Read, "shaft.md", b"text");
+        let names = |digests: &[FileDigest]| {
+            digests.iter().map(|file| file.path.clone()).collect::<Vec<_>>().join(" ")
+        };
+        let files = compose(&executed(), &study, &|digests| Ok(names(digests))).unwrap();
+        let paths: Vec<_> = files.iter().map(|file| file.path.as_str()).collect();
+        assert_eq!(paths, ["data/reject.csv", "record.json", "report.html"]);
+        let report = String::from_utf8(files[2].bytes.clone()).unwrap();
+        assert_eq!(report, "shaft.md templates/report.html data/reject.csv");
+        let record: serde_json::Value = serde_json::from_slice(&files[1].bytes).unwrap();
+        let listed: Vec<_> = record["files"].as_array().unwrap().iter().map(|file| &file["path"]).collect();
+        assert_eq!(listed, ["shaft.md", "templates/report.html", "data/reject.csv", "report.html"]);
+        assert_eq!(record["files"][3]["sha256"], digest::sha256(&files[2].bytes).as_str());
+        assert_eq!(record["study"]["digest"], digest::sha256(b"text").as_str());
+        assert_eq!(record["models"][0]["digest"], digest::sha256(b"x: 1\n").as_str());
+    }
+
+    #[test]
+    fn a_defect_in_one_study_loses_no_other_and_keeps_the_order() {
+        let console = Console::new();
+        let found = |name: &str| Found { path: name.into(), shown: name.to_owned(), name: name.to_owned() };
+        let studies: Vec<Found> = ["a", "b", "c", "d", "e"].map(found).into();
+        let issue_one = |found: &Found, doing: &dyn Fn(&str)| {
+            doing("nothing");
+            assert!(found.name != "b" && found.name != "e", "study {}", found.name);
+            Ok(Issued {
+                report: found.path.clone(),
+                verdicts: Verdicts::default(),
+                weakest: None,
+                faults: Faults::new(),
+                sources: Sources::default(),
+            })
+        };
+        for jobs in [1, 3] {
+            let outcomes = all(&studies, jobs, &Progress::new(&console, true), &issue_one).unwrap();
+            let words: Vec<String> = outcomes
+                .iter()
+                .map(|outcome| match outcome {
+                    Ok(issued) => issued.report.display().to_string(),
+                    Err(IssueError::Defect(what)) => what.clone(),
+                    Err(other) => panic!("{other:?}"),
+                })
+                .collect();
+            assert_eq!(words, ["a", "study b", "c", "d", "study e"]);
+        }
+    }
 
     #[test]
     fn verdicts_are_counted_in_words() {

@@ -46,13 +46,13 @@ fn value(number: f64, digits: &str, unit: &str) -> Value {
 }
 
 /// A study with a number and nothing else.
-pub(super) fn study() -> Study {
+pub(crate) fn study() -> Study {
     let front = FrontMatter { title: text("A study"), entries: vec![(text("number"), text("HS-1"))] };
     Study { front, body: Vec::new(), blocks: crate::study::block::Blocks::default() }
 }
 
 /// One model with one parameter and one state.
-pub(super) fn models() -> Vec<Model> {
+pub(crate) fn models() -> Vec<Model> {
     vec![Model {
         name: text("shaft"),
         about: None,
@@ -86,7 +86,7 @@ pub(super) fn models() -> Vec<Model> {
 }
 
 /// One run with one quantity, one criterion on it.
-pub(super) fn outcome() -> Outcome {
+pub(crate) fn outcome() -> Outcome {
     let mesh = |accepted, switch| Mesh {
         accepted,
         smallest: 0.25,

@@ -9,7 +9,7 @@
 pub mod csv;
 pub mod digest;
 #[cfg(test)]
-mod example;
+pub(crate) mod example;
 pub mod json;
 pub mod number;
 pub mod numerics;

@@ -1,7 +1,7 @@
 //! All writing to disk.
 //!
 //! A report folder is written whole into a folder beside its place, every file flushed to the disk, and then
-//! takes the place of the old one in one step ([`swap`](super::swap)). So a full disk, a refused permission or a
+//! takes the place of the old one in one step. So a full disk, a refused permission or a
 //! stop at any moment leaves the old report or the new one. What the last issue wrote and this one does not
 //! (data of a run that is gone) is not in the new folder; what somebody else put into the old folder, reports
 //! of other studies included, is carried over by hard links.
@@ -101,7 +101,7 @@ pub fn file(place: &Path, bytes: &[u8]) -> Result<(), Failure> {
     Ok(())
 }
 
-/// As [`file`], where nothing stands at `place` yet.
+/// As [`file()`], where nothing stands at `place` yet.
 ///
 /// # Errors
 /// [`Failure`] with the path and the cause, of kind `AlreadyExists` where something stands there.
