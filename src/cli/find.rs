@@ -131,12 +131,10 @@ fn add(root: &Path, path: &Path, list: &mut Vec<Found>, troubles: &mut Vec<Troub
     list.push(Found { path: path.to_path_buf(), shown, name });
 }
 
+/// With forward slashes, and without the `./` that a walk through `.` gives.
 fn slashes(path: &str) -> String {
-    if std::path::MAIN_SEPARATOR == '/' {
-        path.to_owned()
-    } else {
-        path.replace(std::path::MAIN_SEPARATOR, "/")
-    }
+    let path = path.replace(std::path::MAIN_SEPARATOR, "/");
+    path.strip_prefix("./").map_or(path.clone(), str::to_owned)
 }
 
 /// Leaves out a file that was named before; two files for one place are an error.
@@ -215,6 +213,13 @@ mod tests {
         ]);
         assert_eq!(names(&[root.path().join("s")]), ["a/z", "b", "c.v2"]);
         assert_eq!(names(&[root.path().join("s/a/z.md")]), ["z"]);
+    }
+
+    #[test]
+    fn a_path_is_shown_with_forward_slashes_and_no_dot_before_it() {
+        assert_eq!(slashes("./a/b.md"), "a/b.md");
+        assert_eq!(slashes("../a.md"), "../a.md");
+        assert_eq!(slashes(".a.md"), ".a.md");
     }
 
     #[test]

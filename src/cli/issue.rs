@@ -120,12 +120,15 @@ pub(super) fn issue(asked: &Issue, console: &Console) -> Status {
     status
 }
 
+/// Issues a study and tells what is being done.
+type IssueOne<'a> = dyn Fn(&Found, &dyn Fn(&str)) -> Result<Issued, IssueError> + Sync + 'a;
+
 /// Does `issue_one` with all studies, `jobs` at a time; the outcomes in the order of the studies.
 fn all(
     studies: &[Found],
     jobs: usize,
     progress: &Progress<'_>,
-    issue_one: &(dyn Fn(&Found, &dyn Fn(&str)) -> Result<Issued, IssueError> + Sync),
+    issue_one: &IssueOne<'_>,
 ) -> Result<Vec<Result<Issued, IssueError>>, Failure> {
     let pool = rayon::ThreadPoolBuilder::new()
         .num_threads(jobs)
