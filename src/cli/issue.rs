@@ -121,7 +121,7 @@ pub(super) fn issue(asked: &Issue, console: &Console) -> Status {
 }
 
 /// Issues a study and tells what is being done.
-type IssueOne<'a> = dyn Fn(&Found, &dyn Fn(&str)) -> Result<Issued, IssueError> + Sync + 'a;
+type IssueOne<'a> = dyn Fn(&Found, &(dyn Fn(&str) + Sync)) -> Result<Issued, IssueError> + Sync + 'a;
 
 /// Does `issue_one` with all studies, `jobs` at a time; the outcomes in the order of the studies.
 fn all(
@@ -149,7 +149,11 @@ fn all(
 ///
 /// # Errors
 /// [`IssueError`]; the last good report is then as it was.
-pub fn issue_one(found: &Found, options: &Options, progress: &dyn Fn(&str)) -> Result<Issued, IssueError> {
+pub fn issue_one(
+    found: &Found,
+    options: &Options,
+    progress: &(dyn Fn(&str) + Sync),
+) -> Result<Issued, IssueError> {
     let started = Instant::now();
     let text = source::read(found)?;
     let study = FileDigest::of(Was::Read, file_name(&found.path), text.as_bytes());
@@ -304,7 +308,7 @@ mod tests {
         let console = Console::new();
         let found = |name: &str| Found { path: name.into(), shown: name.to_owned(), name: name.to_owned() };
         let studies: Vec<Found> = ["a", "b", "c", "d", "e"].map(found).into();
-        let issue_one = |found: &Found, doing: &dyn Fn(&str)| {
+        let issue_one = |found: &Found, doing: &(dyn Fn(&str) + Sync)| {
             doing("nothing");
             assert!(found.name != "b" && found.name != "e", "study {}", found.name);
             Ok(Issued {

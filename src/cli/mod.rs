@@ -11,6 +11,7 @@ pub mod find;
 mod guard;
 pub mod issue;
 mod pages;
+pub mod pipeline;
 mod progress;
 mod proofread;
 mod schemes;

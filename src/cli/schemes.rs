@@ -32,7 +32,7 @@ fn list(all: &[Scheme]) -> String {
             scheme.name.to_owned(),
             scheme.order.to_string(),
             scheme.embedded_order.map_or_else(|| "-".to_owned(), |order| order.to_string()),
-            scheme.tableau.c.len().to_string(),
+            scheme.tableau.stages().to_string(),
             scheme.source.to_owned(),
         ]
     };
@@ -65,11 +65,11 @@ fn page(scheme: &Scheme) -> String {
         format!("Order: {}", scheme.order),
     ];
     lines.extend(scheme.embedded_order.map(|order| format!("Order of the embedded weights: {order}")));
-    lines.push(format!("Stages: {}", scheme.tableau.c.len()));
+    lines.push(format!("Stages: {}", scheme.tableau.stages()));
     if scheme.tableau.first_same_as_last {
         lines.push("The last stage of a step is the first of the next.".to_owned());
     }
-    lines.extend(stages::stability(scheme));
+    lines.extend(stages::properties(scheme));
     lines.join("\n") + "\n"
 }
 

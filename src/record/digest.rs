@@ -1,8 +1,6 @@
-//! SHA-256 digests of files, of model blocks and of tableaux.
+//! SHA-256 digests of files, and the text of model blocks.
 
 use crate::fault::{SourceFile, Span};
-use crate::scheme::ExactTableau;
-use num_rational::BigRational;
 use pulldown_cmark::{Event, Options, Parser, Tag};
 use serde::Serialize;
 use sha2::{Digest, Sha256};
@@ -64,29 +62,6 @@ pub fn block_text(file: &SourceFile, at: Span) -> Option<String> {
     None
 }
 
-/// The coefficients as text in one way only: a line `c`, a line `a` a stage, a line `b` and, for a pair, a
-/// line `b_hat`, each with exact ratios in lowest terms.
-pub fn tableau_text(exact: &ExactTableau) -> String {
-    let mut text = String::new();
-    let mut line = |name: &str, cells: &[BigRational]| {
-        text.push_str(name);
-        for cell in cells {
-            text.push(' ');
-            text.push_str(&cell.to_string());
-        }
-        text.push('\n');
-    };
-    line("c", &exact.c);
-    for row in &exact.a {
-        line("a", row);
-    }
-    line("b", &exact.b);
-    if let Some(b_hat) = &exact.b_hat {
-        line("b_hat", b_hat);
-    }
-    text
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -100,18 +75,6 @@ mod tests {
             sha256(b"abcdbcdecdefdefgefghfghighijhijkijkljklmklmnlmnomnopnopq"),
             "248d6a61d20638b8e5c026930c3e6039a33ce45964ff2167f6ecedd419db06c1"
         );
-    }
-
-    #[test]
-    fn a_tableau_has_one_text() {
-        let ratio = |n: i64, d: i64| BigRational::new(n.into(), d.into());
-        let exact = ExactTableau {
-            c: vec![ratio(0, 1), ratio(2, 4)],
-            a: vec![vec![], vec![ratio(1, 2)]],
-            b: vec![ratio(0, 1), ratio(1, 1)],
-            b_hat: Some(vec![ratio(1, 1), ratio(-1, 3)]),
-        };
-        assert_eq!(tableau_text(&exact), "c 0 1/2\na\na 1/2\nb 0 1\nb_hat 1 -1/3\n");
     }
 
     #[test]

@@ -1,41 +1,14 @@
 //! A small study with its outcome, for the tests of this folder.
 
-use crate::bound::{
-    CriterionOutcome, Estimates, Grade, Mesh, Outcome, Quantity, Rejections, RunOutcome, Steps,
-};
-use crate::fault::Span;
-use crate::model::graph::{Graph, NodeId};
-use crate::model::{Model, State};
-use crate::scheme::{Dense, ExactTableau, Scheme, Tableau};
+use crate::bound::{CriterionOutcome, Estimates, Grade, Mesh, Outcome, Quantity, RunOutcome, Steps};
+use crate::fault::{Faults, Span};
+use crate::model::{self, Model};
+use crate::run::Rejections;
+use crate::scheme;
 use crate::study::block::criteria::{Relation, Verdict};
-use crate::study::block::model::{ParameterEntry, Start, StateEntry};
+use crate::study::block::model::{ModelBlock, ParameterEntry, Start, StateEntry};
 use crate::study::{FrontMatter, Study, Text};
 use crate::unit::Value;
-use num_rational::BigRational;
-use std::sync::LazyLock;
-
-/// Euler's scheme, written out.
-static EULER: LazyLock<Scheme> = LazyLock::new(|| {
-    let (zero, one) = (BigRational::from_integer(0.into()), BigRational::from_integer(1.into()));
-    Scheme {
-        key: "euler",
-        name: "Euler",
-        source: "",
-        serves: "",
-        drawing: "",
-        order: 1,
-        embedded_order: None,
-        tableau: Tableau {
-            c: vec![0.0],
-            a: vec![vec![]],
-            b: vec![1.0],
-            error: None,
-            first_same_as_last: false,
-            exact: ExactTableau { c: vec![zero], a: vec![vec![]], b: vec![one], b_hat: None },
-        },
-        dense: Dense::Hermite { lifts: 0 },
-    }
-});
 
 fn text(value: &str) -> Text {
     Text { value: value.to_owned(), at: Span::default(), exact: true }
@@ -51,9 +24,9 @@ pub(crate) fn study() -> Study {
     Study { front, body: Vec::new(), blocks: crate::study::block::Blocks::default() }
 }
 
-/// One model with one parameter and one state.
+/// One model with one parameter and one state; its block begins at the first byte of the first file.
 pub(crate) fn models() -> Vec<Model> {
-    vec![Model {
+    let block = ModelBlock {
         name: text("shaft"),
         about: None,
         parameters: vec![ParameterEntry {
@@ -64,25 +37,20 @@ pub(crate) fn models() -> Vec<Model> {
             source: Some(text("survey sheet 4")),
             about: None,
         }],
-        states: vec![State {
-            entry: StateEntry {
-                name: text("z"),
-                start: Start::Value(value(-1.5, "-1.5", "m")),
-                unit: None,
-                scale: None,
-                source: None,
-                about: None,
-            },
-            unit: Some("m".to_owned()),
-            start: NodeId(0),
-            rate_text: text("-z/L"),
-            rate: NodeId(0),
-            exact: None,
+        states: vec![StateEntry {
+            name: text("z"),
+            start: Start::Value(value(-1.5, "-1.5", "m")),
+            unit: None,
+            scale: None,
+            source: None,
+            about: None,
         }],
         derived: Vec::new(),
+        rates: vec![(text("z"), text("-z/L"))],
         invariants: Vec::new(),
-        graph: Graph::default(),
-    }]
+        exact: Vec::new(),
+    };
+    model::check(&block, &mut Faults::new()).into_iter().collect()
 }
 
 /// One run with one quantity, one criterion on it.
@@ -99,7 +67,7 @@ pub(crate) fn outcome() -> Outcome {
         runs: vec![RunOutcome {
             name: "reject".to_owned(),
             model: 0,
-            scheme: &EULER,
+            scheme: &scheme::all()[0],
             steps: Steps::Fixed { step: 0.5 },
             span: (0.0, 1.0),
             time_unit: Some("s".to_owned()),
@@ -134,6 +102,7 @@ pub(crate) fn outcome() -> Outcome {
             exact: Vec::new(),
             spectrum: Vec::new(),
             caps: Vec::new(),
+            remarks: Vec::new(),
         }],
         criteria: vec![CriterionOutcome {
             name: "freeboard".to_owned(),

@@ -165,7 +165,7 @@ fn run<'a>(run: &'a RunOutcome, subject: &Subject<'a>) -> Result<shape::Run<'a>,
         name,
         model: model.map_or("", |model| model.name.value.as_str()),
         scheme: run.scheme.key,
-        tableau: digest::sha256(digest::tableau_text(&run.scheme.tableau.exact).as_bytes()),
+        tableau: digest::sha256(run.scheme.tableau.digest_text().as_bytes()),
         order: run.scheme.order,
         embedded_order: run.scheme.embedded_order,
         step,
@@ -225,6 +225,7 @@ fn run<'a>(run: &'a RunOutcome, subject: &Subject<'a>) -> Result<shape::Run<'a>,
             columns: rows.columns.iter().map(|column| column.name.as_str()).collect(),
         }),
         caps: &run.caps,
+        remarks: &run.remarks,
     })
 }
 
@@ -431,7 +432,7 @@ mod tests {
         assert_eq!(run["tolerance"], Json::Null);
         assert_eq!(run["meshes"][0]["rejected"]["switch"], 1);
         assert_eq!(run["cost"], serde_json::json!({"steps": 7, "rejected": 1, "evaluations": 7}));
-        assert_eq!(run["tableau"], digest::sha256(b"c 0\na\nb 1\n"));
+        assert_eq!(run["tableau"], digest::sha256(b"c 0/1\na\nb 1/1\n"));
         assert_eq!(run["parameters"][0]["name"], "L");
     }
 

@@ -94,6 +94,7 @@ pub(super) struct Run<'a> {
     pub(super) exact: Vec<ExactError<'a>>,
     pub(super) rows: Option<Rows<'a>>,
     pub(super) caps: &'a [String],
+    pub(super) remarks: &'a [String],
 }
 
 #[derive(Serialize)]

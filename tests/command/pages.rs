@@ -11,6 +11,18 @@ fn schemes_are_listed_under_their_heads() {
 }
 
 #[test]
+fn a_scheme_is_shown_with_its_coefficients_order_and_stability() {
+    let tool = Tool::new();
+    let page = tool.expect(0, "schemes rk4").out;
+    // Kutta's weights (1901); the ends of the stable axes, -2.785 and 2 sqrt(2), in Hairer & Wanner II
+    // (2nd ed. 1996), sect. IV.2.
+    for text in ["1/6  1/3  1/3  1/6", "Order: 4", "Stages: 4", "from -2.7853 to 0", "to 2.8284 i"] {
+        assert!(page.contains(text), "{text}: {page}");
+    }
+    assert!(tool.expect(0, "schemes").out.contains("\nrk4 "), "its key is in the list");
+}
+
+#[test]
 fn a_scheme_that_is_not_there_is_wrong() {
     let done = Tool::new().expect(2, "schemes no-such-scheme");
     assert!(done.err.starts_with("error: there is no scheme `no-such-scheme`"), "{done:#?}");
