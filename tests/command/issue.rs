@@ -1,7 +1,7 @@
 //! `issue` and `proofread` of whole studies: what is left behind, and when nothing may change.
 
 use crate::tool::{Done, Tool, files_below};
-use sha2::{Digest, Sha256};
+use halfstep::record::digest::sha256;
 use std::collections::BTreeMap;
 use std::path::Path;
 use std::time::Duration;
@@ -68,8 +68,7 @@ fn assert_whole(folder: &Path) {
     for file in record["files"].as_array().unwrap() {
         if file["was"] == "written" {
             let path = file["path"].as_str().unwrap();
-            let digest: String = Sha256::digest(&files[path]).iter().map(|b| format!("{b:02x}")).collect();
-            assert_eq!(file["sha256"], digest.as_str(), "{path}");
+            assert_eq!(file["sha256"], sha256(&files[path]).as_str(), "{path}");
             written += 1;
         }
     }
