@@ -22,21 +22,9 @@ mod common;
 
 use std::collections::BTreeMap;
 
-use common::problems::problem;
-use common::random::Random;
+use common::coverage::{Case, cases};
 use halfstep::bound::Grade;
-use halfstep::cli::pipeline::evaluate;
 use rayon::prelude::*;
-
-/// One bound beside the truth.
-struct Case {
-    scheme: &'static str,
-    grade: Grade,
-    ratio: f64,
-    /// Whether the meshes agreed to rounding: such a bound is a floor, and its tightness means nothing.
-    floor: bool,
-    text: String,
-}
 
 fn main() {
     let problems = std::env::args().skip(1).find_map(|argument| argument.parse().ok()).unwrap_or(2200_u64);
@@ -97,53 +85,4 @@ fn main() {
     for case in weak.iter().take(10) {
         println!("{:.3} {} {}", case.ratio, case.scheme, case.text);
     }
-}
-
-fn cases(i: u64) -> Vec<Case> {
-    let problem = problem(i);
-    let mut random = Random::new(1_000_000 + i);
-    let schemes = halfstep::scheme::all();
-    let scheme = &schemes[random.below(schemes.len())];
-    let adaptive = scheme.embedded_order.is_some() && random.below(2) == 0;
-    let control = if adaptive {
-        format!("tolerance: 1e-{}", 3 + random.below(6))
-    } else {
-        let exponent = random.between(-2.6, 0.2);
-        format!("step: {:.5}", problem.scale * 10_f64.powf(exponent))
-    };
-    let text = problem.study(scheme.key, &control);
-    let outcome = match evaluate("coverage.md", &text) {
-        Ok((_, outcome)) => outcome,
-        Err(faults) => {
-            if faults.trim().is_empty()
-                || faults.contains("step-beyond-span")
-                || faults.contains("not-finite")
-            {
-                return Vec::new();
-            }
-            panic!("{faults}\n{text}");
-        }
-    };
-    let quantities = outcome.runs.into_iter().flat_map(|run| run.quantities);
-    quantities
-        .filter_map(|quantity| {
-            let error = quantity.true_error?.abs();
-            let ratio = match quantity.bound {
-                Some(bound) if bound > 0.0 => error / bound,
-                _ if error == 0.0 => 0.0,
-                _ => f64::INFINITY,
-            };
-            let text = format!(
-                "{i} {} {control}: {} = {:?}, true error {error:e}, bound {:?}, {} {:?}",
-                problem.family,
-                quantity.text,
-                quantity.value,
-                quantity.bound,
-                quantity.why,
-                quantity.estimates
-            );
-            let floor = quantity.why.contains("to rounding");
-            Some(Case { scheme: scheme.key, grade: quantity.grade, ratio, floor, text })
-        })
-        .collect()
 }

@@ -44,7 +44,10 @@ fn records(out: &Path) -> Vec<(String, Value)> {
 /// What a golden record keeps: all that numerics decide, nothing that the look of a report changes.
 fn essence(record: &Value) -> Value {
     let pick = |value: &Value, keys: &[&str]| -> Value {
-        keys.iter().map(|key| ((*key).to_owned(), value[*key].clone())).collect::<serde_json::Map<_, _>>().into()
+        keys.iter()
+            .map(|key| ((*key).to_owned(), value[*key].clone()))
+            .collect::<serde_json::Map<_, _>>()
+            .into()
     };
     let list = |key: &str, keys: &[&str]| -> Vec<Value> {
         record[key].as_array().unwrap().iter().map(|value| pick(value, keys)).collect()
@@ -71,7 +74,11 @@ fn demo_studies_give_the_golden_bits() {
             continue;
         }
         let golden = std::fs::read_to_string(&path).unwrap_or_default();
-        assert!(golden == text, "{name} differs from its golden record:\n{}", first_difference(&golden, &text));
+        assert!(
+            golden == text,
+            "{name} differs from its golden record:\n{}",
+            first_difference(&golden, &text)
+        );
     }
 }
 

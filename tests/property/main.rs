@@ -18,5 +18,6 @@
 
 #[path = "../common/mod.rs"]
 mod common;
+mod coverage;
 mod hidden;
 mod orders;

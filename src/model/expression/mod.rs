@@ -8,3 +8,6 @@ mod lower;
 
 pub use functions::{FUNCTIONS, is_function};
 pub use lower::{Scope, lower};
+
+#[cfg(test)]
+mod tests;

@@ -17,6 +17,9 @@ use std::collections::{BTreeMap, BTreeSet};
 use crate::arithmetic::elementary::power;
 use crate::fault::Span;
 
+/// Longest text kept of the origin of a node.
+const LONGEST_ORIGIN: usize = 120;
+
 /// A node of a [`Graph`].
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
 pub struct NodeId(pub u32);
@@ -155,7 +158,13 @@ impl Graph {
     pub fn set_origin(&mut self, id: NodeId, at: Span, text: &str) {
         let origin = &mut self.origins[id.0 as usize];
         if origin.is_none() {
-            *origin = Some((at, text.to_owned()));
+            // Cut short: a long sum has as many parts as terms, and each of them is as long as the sum.
+            let mut end = text.len().min(LONGEST_ORIGIN);
+            while !text.is_char_boundary(end) {
+                end -= 1;
+            }
+            let more = if end < text.len() { "..." } else { "" };
+            *origin = Some((at, format!("{}{more}", &text[..end])));
         }
     }
 
@@ -328,3 +337,6 @@ impl Graph {
         list
     }
 }
+
+#[cfg(test)]
+mod tests;
