@@ -5,7 +5,7 @@
 //!
 //! - [`arithmetic`]: the bits. Elementary functions, exact ratios, eigenvalues.
 //! - [`fault`]: places in study text, faults and how they are shown.
-//! - [`unit`]: values with a unit as a study writes them.
+//! - [`mod@unit`]: values with a unit as a study writes them.
 //! - [`study`]: Markdown text to front matter, prose and blocks, each with its place.
 //! - [`model`]: block bodies to a checked model with compiled rates and Jacobian.
 //! - [`scheme`]: tableaux and the only code that knows how to advance a state.

@@ -1,6 +1,7 @@
 //! What is known of an executed study: plain data, for the figures, the report and the record.
 
 use crate::fault::Span;
+use crate::run::Rejections;
 use crate::scheme::Scheme;
 use crate::study::block::criteria::{Relation, Verdict};
 
@@ -117,6 +118,8 @@ pub struct RunOutcome {
     pub spectrum: Vec<SpectrumPoint>,
     /// What limits the grades of the whole run, in words; empty where nothing does.
     pub caps: Vec<String>,
+    /// What a reader should know of the run beside that: a companion that was lost, say.
+    pub remarks: Vec<String>,
 }
 
 /// The steps and the cost of one mesh.
@@ -134,17 +137,6 @@ pub struct Mesh {
     pub evaluations: u64,
     /// Kinks and jumps that were located and made mesh points.
     pub switches: u64,
-}
-
-/// Steps rejected, by cause.
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
-pub struct Rejections {
-    /// The local error estimate was above the tolerance.
-    pub local_error: u64,
-    /// A stage was not finite.
-    pub not_finite: u64,
-    /// A kink or jump lay inside the step, which was cut there.
-    pub switch: u64,
 }
 
 /// The cost of the companion.
@@ -252,7 +244,7 @@ pub struct Curve {
     pub points: Vec<(f64, f64)>,
     /// The largest bound of the ordinate over the curve, where there is one.
     pub bound: Option<f64>,
-    /// The weakest grade over the curve.
+    /// The grade of that bound.
     pub grade: Grade,
 }
 

@@ -3,12 +3,18 @@
 //! Enters: a [`ModelBlock`](crate::study::block::model::ModelBlock). Leaves: a [`Model`]. This stage knows
 //! nothing of schemes and runs.
 
+mod check;
+pub mod expression;
 pub mod graph;
 pub mod program;
 
+pub use check::check;
+
+use crate::fault::Faults;
 use crate::study::Text;
 use crate::study::block::model::{ParameterEntry, StateEntry};
-use graph::{Graph, NodeId};
+use check::{NameScope, Symbols};
+use graph::{Graph, NodeId, Wrt};
 
 /// A checked model.
 #[derive(Clone, Debug)]
@@ -27,6 +33,64 @@ pub struct Model {
     pub invariants: Vec<Expression>,
     /// All expressions, common parts shared.
     pub graph: Graph,
+    symbols: Symbols,
+}
+
+/// Which names an expression may use.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Names {
+    /// States, derived quantities, parameters and `t`.
+    All,
+    /// Parameters.
+    Parameters,
+    /// Parameters and `t`.
+    TimeAndParameters,
+}
+
+impl Model {
+    /// Adds an expression of this model's names to `graph`, which is the model's or a copy that grows. `None`
+    /// with faults where it is wrong.
+    pub fn express(
+        &self,
+        graph: &mut Graph,
+        text: &Text,
+        names: Names,
+        faults: &mut Faults,
+    ) -> Option<NodeId> {
+        expression::lower(text, graph, &NameScope { symbols: &self.symbols, names }, faults)
+    }
+
+    /// The unit of an expression that is the bare name of a state, parameter or derived quantity, as text.
+    pub fn unit_of(&self, expression: &str) -> Option<String> {
+        let name = expression.trim();
+        let parameter = self.parameters.iter().find(|entry| entry.name.value == name);
+        let state = self.states.iter().find(|state| state.entry.name.value == name);
+        let derived = self.derived.iter().find(|derived| derived.name.value == name);
+        parameter
+            .and_then(|entry| entry.value.unit.clone())
+            .or_else(|| state.and_then(|state| state.unit.clone()))
+            .or_else(|| derived.and_then(|derived| derived.unit.clone()))
+    }
+
+    /// The rate of every state.
+    pub fn rates(&self) -> Vec<NodeId> {
+        self.states.iter().map(|state| state.rate).collect()
+    }
+
+    /// The entries of the Jacobian that are not zero for every state: row, column, node added to `graph`.
+    pub fn jacobian(&self, graph: &mut Graph) -> Vec<(usize, usize, NodeId)> {
+        let mut entries = Vec::new();
+        for (row, state) in self.states.iter().enumerate() {
+            let (_, columns) = graph.depends(state.rate);
+            for column in columns {
+                let node = graph.derivative(state.rate, Wrt::State(column));
+                if graph.constant_value(node) != Some(0.0) {
+                    entries.push((row, column, node));
+                }
+            }
+        }
+        entries
+    }
 }
 
 /// A state of a model.

@@ -1,0 +1,174 @@
+//! Where the command meets the stages: each function here calls one group of them and does nothing else.
+
+use super::fault_text::IssueError;
+use super::find::Found;
+use super::pipeline::{self, Checked};
+use crate::bound::{Outcome, Quantity, RunOutcome, Steps};
+use crate::fault::{Faults, Sources};
+use crate::model::Model;
+use crate::record::digest::FileDigest;
+use crate::record::json::StepControl;
+use crate::record::register::Entry;
+use crate::scheme::stability::Stability;
+use crate::scheme::{self, Scheme, control, order};
+use crate::study::Study;
+use std::path::PathBuf;
+
+/// What the stages need to know beside the study.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Settings {
+    /// A folder with the user's own templates.
+    pub templates: Option<PathBuf>,
+    /// The largest number of steps of a run.
+    pub limit: u64,
+}
+
+/// An executed study: all that its report and its record are made of.
+#[derive(Debug)]
+pub struct Executed {
+    /// The study as read.
+    pub study: Study,
+    /// The files that it was read from.
+    pub sources: Sources,
+    /// The checked models.
+    pub models: Vec<Model>,
+    /// What came of the runs.
+    pub outcome: Outcome,
+    /// Warnings and notes.
+    pub faults: Faults,
+    /// The files read beside the study itself.
+    pub read: Vec<FileDigest>,
+}
+
+/// Reads and checks a study as far as that needs no integration: its warnings and notes, with the files that they
+/// lie in.
+///
+/// # Errors
+/// [`IssueError::Study`] with all faults where one is an error.
+pub fn check(found: &Found, text: String) -> Result<(Faults, Sources), IssueError> {
+    let mut sources = Sources::default();
+    let file = sources.add(found.shown.as_str(), text);
+    let mut faults = Faults::new();
+    match pipeline::check(&sources, file, None, &mut faults) {
+        Some(_) if !faults.any_error() => Ok((faults, sources)),
+        _ => Err(wrong(faults, sources)),
+    }
+}
+
+/// Executes a study: from its text to a bound for every quantity. `progress` is told what is being done.
+///
+/// # Errors
+/// [`IssueError`] of any kind.
+pub fn execute(
+    found: &Found,
+    text: String,
+    settings: &Settings,
+    progress: &(dyn Fn(&str) + Sync),
+) -> Result<Executed, IssueError> {
+    let mut sources = Sources::default();
+    let file = sources.add(found.shown.as_str(), text);
+    let mut faults = Faults::new();
+    progress("checking");
+    let Some(checked) = pipeline::check(&sources, file, Some(settings.limit), &mut faults) else {
+        return Err(wrong(faults, sources));
+    };
+    progress("integrating");
+    let outcome = pipeline::execute(&checked, &mut faults, &|run| progress(&format!("run {run} is done")));
+    match outcome {
+        Some(outcome) if !faults.any_error() => {
+            let Checked { study, models, .. } = checked;
+            Ok(Executed { study, sources, models, outcome, faults, read: Vec::new() })
+        }
+        _ => Err(wrong(faults, sources)),
+    }
+}
+
+/// The faults of a study that cannot be issued. Where no stage has named one, the stage itself is wrong.
+fn wrong(faults: Faults, sources: Sources) -> IssueError {
+    if faults.any_error() {
+        IssueError::Study(Box::new((faults, sources)))
+    } else {
+        IssueError::Defect("a stage gave nothing and named no error".to_owned())
+    }
+}
+
+/// The report as HTML. `files` are the digests of the study and of all files read and written but the report
+/// and the record.
+///
+/// # Errors
+/// [`IssueError`] where a template of the user's is wrong or cannot be read.
+pub fn report(
+    _executed: &Executed,
+    _files: &[FileDigest],
+    _settings: &Settings,
+) -> Result<String, IssueError> {
+    Err(not_connected())
+}
+
+/// The text of a quantity as the report shows it: value, bound and unit.
+pub fn shown(quantity: &Quantity) -> String {
+    let unit = quantity.unit.as_deref().map_or_else(String::new, |unit| format!(" {unit}"));
+    match (quantity.value, quantity.bound) {
+        (Some(value), Some(bound)) => format!("{value} ± {bound}{unit}"),
+        (Some(value), None) => format!("{value}{unit}, no bound"),
+        (None, _) => "withheld".to_owned(),
+    }
+}
+
+/// How an adaptive run chose its steps; `None` for a fixed step.
+pub fn step_control(run: &RunOutcome) -> Option<StepControl> {
+    let Steps::Adaptive { .. } = run.steps else { return None };
+    let lower = run.scheme.embedded_order.map_or(run.scheme.order, |order| order.min(run.scheme.order));
+    let constants = [
+        ("order of the error estimate", f64::from(lower) + 1.0),
+        ("safety", control::SAFETY),
+        ("smallest factor", control::SMALLEST_FACTOR),
+        ("largest factor", control::LARGEST_FACTOR),
+        ("proportional", control::PROPORTIONAL),
+        ("integral", control::INTEGRAL),
+    ];
+    Some(StepControl {
+        norm: "largest over the states of |local error| / (tolerance * (larger of |y| at both ends + scale))"
+            .to_owned(),
+        constants: constants.map(|(name, value)| (name.to_owned(), value)).to_vec(),
+    })
+}
+
+/// The register as HTML; `None` while there is none.
+pub fn register(_entries: &[Entry]) -> Option<String> {
+    None
+}
+
+/// All schemes in the order in which they are listed.
+pub fn schemes() -> &'static [Scheme] {
+    scheme::all()
+}
+
+/// What is computed of a scheme, a line each: the error that remains, where it is stable.
+pub fn properties(scheme: &Scheme) -> Vec<String> {
+    let exact = &scheme.tableau.exact;
+    let mut lines = Vec::new();
+    if let Some(error) = order::principal_error(exact, &exact.b) {
+        lines.push(format!(
+            "Leading error term: two-norm {:.3e}, largest coefficient {:.3e}",
+            error.two_norm, error.max_norm
+        ));
+    }
+    let mut stable = |title: &str, weights| {
+        let stability = Stability::of_weights(exact, weights);
+        lines.push(format!(
+            "{title}: step times eigenvalue from {:.4} to 0 on the real axis, to {:.4} i on the imaginary axis",
+            stability.real_limit(),
+            stability.imaginary_limit()
+        ));
+    };
+    stable("Stable", &exact.b);
+    if let Some(b_hat) = &exact.b_hat {
+        stable("Stable with the embedded weights", b_hat);
+    }
+    lines
+}
+
+fn not_connected() -> IssueError {
+    IssueError::Defect("this build has no stages between the text of a study and its report".to_owned())
+}

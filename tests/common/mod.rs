@@ -1,0 +1,4 @@
+//! What the tests and benches share.
+
+pub mod problems;
+pub mod random;

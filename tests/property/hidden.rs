@@ -1,0 +1,110 @@
+//! What meshes cannot see through must never earn a good grade: jumps and kinks hidden inside a step.
+
+use halfstep::bound::Grade;
+use halfstep::cli::pipeline::evaluate;
+use halfstep::scheme::all;
+
+use crate::common::random::Random;
+
+fn study(model: &str, scheme: &str, step: f64, until: f64) -> String {
+    format!(
+        "---\nstudy: hidden\n---\n\n```model m\n{model}\n```\n\n```run r\nmodel: m\nscheme: {scheme}\nstep: {step}\nuntil: {until}\nquantities:\n  q: final x\n```\n"
+    )
+}
+
+/// A jump that is written as a very steep but smooth function, so that no switch marks it.
+/// Source of the problem: the relaxation of numerical practice, y' = -y + H(t - a); closed form elementary.
+#[test]
+fn a_jump_hidden_inside_a_step_is_at_most_indicated() {
+    let mut random = Random::new(7);
+    let mut misgraded = Vec::new();
+    let mut violated = Vec::new();
+    let mut count = 0;
+    for scheme in all() {
+        for _ in 0..60 {
+            let (a, step) = (random.between(0.3, 1.7), random.between(0.03, 0.2));
+            // The relaxation rate and size of the jump vary; the jump is 1e-9 wide.
+            let (k, size) = (random.between(0.3, 2.0), random.between(0.2, 3.0));
+            let model = format!("states: {{x: 1}}\nrates:\n  x: \"-{k}*x+{size}*(1+tanh(1e9*(t-{a})))/2\"");
+            let exact = (-k * 2.0_f64).exp() + size / k * (1.0 - (-k * (2.0 - a)).exp());
+            let (_, outcome) = evaluate("hidden.md", &study(&model, scheme.key, step, 2.0)).unwrap();
+            let quantity = &outcome.runs[0].quantities[0];
+            let error = (quantity.value.unwrap() - exact).abs();
+            count += 1;
+            let text = format!("{} step {step} jump at {a}: error {error:e} {quantity:?}", scheme.key);
+            // A jump whose effect is small beside the error of the scheme may be overlooked: its bound must hold.
+            if quantity.grade < Grade::Indicated && error > quantity.bound.unwrap() {
+                misgraded.push(text.clone());
+            } else if quantity.grade < Grade::Indicated && scheme.order >= 2 {
+                misgraded.push(text.clone());
+            }
+            if quantity.bound.is_some_and(|bound| error > bound) {
+                violated.push(text);
+            }
+        }
+    }
+    assert!(misgraded.is_empty(), "{} of {count}:\n{}", misgraded.len(), misgraded.join("\n"));
+    assert!(violated.len() * 50 <= count, "{} of {count}:\n{}", violated.len(), violated.join("\n"));
+}
+
+/// The same jump written with `signum` is located and made a mesh point: the order of the scheme is kept.
+#[test]
+fn a_located_jump_keeps_order_and_grade() {
+    let mut random = Random::new(8);
+    for scheme in all() {
+        for _ in 0..20 {
+            let (a, step) = (random.between(0.3, 1.7), random.between(0.01, 0.03));
+            let (k, size) = (random.between(0.3, 2.0), random.between(0.2, 3.0));
+            let model = format!("states: {{x: 1}}\nrates:\n  x: \"-{k}*x+{size}*(1+signum(t-{a}))/2\"");
+            let exact = (-k * 2.0_f64).exp() + size / k * (1.0 - (-k * (2.0 - a)).exp());
+            let (_, outcome) = evaluate("located.md", &study(&model, scheme.key, step, 2.0)).unwrap();
+            let quantity = &outcome.runs[0].quantities[0];
+            let error = (quantity.value.unwrap() - exact).abs();
+            let text = format!("{} step {step} jump at {a}: error {error:e} {quantity:?}", scheme.key);
+            assert!(error <= quantity.bound.unwrap(), "{text}");
+            assert_eq!(outcome.runs[0].meshes[0].switches, 1, "{text}");
+            assert!(quantity.grade <= Grade::Indicated, "{text}");
+        }
+    }
+}
+
+/// A jump in the rates at a level of the state itself: y' = 1 below 1, 1/2 above; y = t, then 1 + (t - 1)/2.
+/// With a second state that relaxes toward the first, so that the jump matters to a curved solution.
+#[test]
+fn a_jump_at_a_level_of_a_state_is_located_and_bounded() {
+    for scheme in all() {
+        for step in [0.013, 0.05, 0.11] {
+            let model = "states: {z: 0, x: 0}\nrates:\n  z: \"(3-signum(z-1))/4*1\"\n  x: \"z-x\"";
+            // z = t until 1, then 1 + (t-1)/2; x' = z - x.
+            // x = t - 1 + e^-t until 1; x(1) = e^-1; then with s = t-1: x = (1+s/2) - 1/2 + c e^-s.
+            let c = (-1.0_f64).exp() - 0.5;
+            let s = 2.0_f64;
+            let exact = 1.0 + s / 2.0 - 0.5 + c * (-s).exp();
+            let (_, outcome) = evaluate("level.md", &study(model, scheme.key, step, 3.0)).unwrap();
+            let quantity = &outcome.runs[0].quantities[0];
+            let error = (quantity.value.unwrap() - exact).abs();
+            let text = format!("{} step {step}: error {error:e} {quantity:?}", scheme.key);
+            assert!(error <= quantity.bound.unwrap(), "{text}");
+            assert_eq!(outcome.runs[0].meshes[0].switches, 1, "{text}");
+        }
+    }
+}
+
+/// Functions that jump where nothing watches cap the grade from the start.
+#[test]
+fn floor_in_the_rates_caps_the_grade() {
+    let text = study("states: {x: 1}\nrates: {x: \"floor(t)-x\"}", "rk4", 0.01, 3.3);
+    let (_, outcome) = evaluate("floor.md", &text).unwrap();
+    assert!(outcome.runs[0].quantities[0].grade >= Grade::Indicated);
+    assert!(!outcome.runs[0].caps.is_empty());
+}
+
+/// Lorenz (1963), J. Atmos. Sci. 20, 130-141: beyond its horizon no number has a bound.
+#[test]
+fn a_chaotic_run_beyond_its_horizon_has_no_bound() {
+    let model =
+        "states: {x: 1, y: 1, z: 1}\nrates:\n  x: \"10*(y-x)\"\n  y: \"x*(28-z)-y\"\n  z: \"x*y-8/3*z\"";
+    let (_, outcome) = evaluate("lorenz.md", &study(model, "rk4", 0.01, 40.0)).unwrap();
+    let quantity = &outcome.runs[0].quantities[0];
+    assert_eq!(quantity.grade, Grade::Unbounded, "{quantity:?}");
+}
