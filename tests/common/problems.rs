@@ -134,7 +134,9 @@ pub fn problem(i: u64) -> Problem {
                 "kink at a level",
                 r.between(3.0, 8.0),
                 1.0 / a,
-                format!("states: {{x: {y0:?}}}\nrates: {{x: \"{k}-{a}*abs(x)\"}}\nexact: {{x: \"{before}+{after}\"}}"),
+                format!(
+                    "states: {{x: {y0:?}}}\nrates: {{x: \"{k}-{a}*abs(x)\"}}\nexact: {{x: \"{before}+{after}\"}}"
+                ),
                 &["time when x rises through 0", &format!("time when x rises through {}", 0.4 * k / a)],
             )
         }
@@ -148,7 +150,9 @@ pub fn problem(i: u64) -> Problem {
                 "shot against drag",
                 r.between(2.0, 8.0),
                 vt / 9.81,
-                format!("states: {{x: {v0}}}\nrates: {{x: \"-9.81*(1+x*abs(x)/{vt}^2)\"}}\nexact: {{x: \"{up}-{down}\"}}"),
+                format!(
+                    "states: {{x: {v0}}}\nrates: {{x: \"-9.81*(1+x*abs(x)/{vt}^2)\"}}\nexact: {{x: \"{up}-{down}\"}}"
+                ),
                 &["time when x falls through 0", "lowest x", "integral of abs(x)"],
             )
         }

@@ -6,20 +6,20 @@ use num_traits::{One, Signed, ToPrimitive, Zero};
 
 /// A number as a table prints it.
 #[derive(Debug)]
-pub struct Printed {
+pub(crate) struct Printed {
     /// Its exact value.
-    pub value: BigRational,
+    pub(crate) value: BigRational,
     /// Half a unit of its last digit.
-    pub half_unit: BigRational,
+    pub(crate) half_unit: BigRational,
     /// How many significant digits are printed; trailing zeros count.
-    pub digits: usize,
+    pub(crate) digits: usize,
 }
 
 /// Reads `-1.27083815427868618766870326927e-1`, exactly.
 ///
 /// # Errors
 /// A sentence, where the text is no decimal number.
-pub fn read(text: &str) -> Result<Printed, String> {
+pub(crate) fn read(text: &str) -> Result<Printed, String> {
     let wrong = || format!("`{text}` is no decimal number");
     let (mantissa, exponent) = text.split_once(['e', 'E']).unwrap_or((text, "0"));
     let exponent: i64 = exponent.parse().map_err(|_| wrong())?;
@@ -43,7 +43,7 @@ fn power_of_ten(power: i64) -> Option<BigRational> {
 ///
 /// # Errors
 /// A sentence, where the number is not finite.
-pub fn distance(ours: f64, printed: &Printed) -> Result<BigRational, String> {
+pub(crate) fn distance(ours: f64, printed: &Printed) -> Result<BigRational, String> {
     Ok((exact(ours)? - printed.value.clone()).abs())
 }
 
@@ -51,12 +51,12 @@ pub fn distance(ours: f64, printed: &Printed) -> Result<BigRational, String> {
 ///
 /// # Errors
 /// A sentence, where the number is not finite.
-pub fn exact(number: f64) -> Result<BigRational, String> {
+pub(crate) fn exact(number: f64) -> Result<BigRational, String> {
     BigRational::from_float(number).ok_or_else(|| format!("{number} is not finite"))
 }
 
 /// The nearest binary number, for showing and for ratios.
-pub fn near(ratio: &BigRational) -> f64 {
+pub(crate) fn near(ratio: &BigRational) -> f64 {
     ratio.to_f64().unwrap_or(f64::NAN)
 }
 

@@ -26,7 +26,8 @@ fn evaluate(name: &str) -> Result<Outcome, String> {
 /// The outcomes of all studies that the sheets name, each computed once.
 fn outcomes(sheets: &[(String, Sheet)], exact: bool) -> Result<BTreeMap<String, Outcome>, String> {
     let wanted = sheets.iter().filter(|(_, sheet)| sheet.relative.is_some() == exact);
-    let names: BTreeSet<&String> = wanted.flat_map(|(_, sheet)| sheet.checks.iter().map(|check| &check.study)).collect();
+    let names: BTreeSet<&String> =
+        wanted.flat_map(|(_, sheet)| sheet.checks.iter().map(|check| &check.study)).collect();
     names.into_iter().map(|name| Ok((name.clone(), evaluate(name)?))).collect()
 }
 
@@ -69,7 +70,9 @@ fn compare(sheet: &Sheet, check: &Check, outcomes: &BTreeMap<String, Outcome>) -
         && error > decimal::near(&printed.half_unit);
     if tells && bound > loose * error {
         let times = bound / error;
-        return Err(format!("its bound {bound:e} is {times:.1} times the true error {error:e}, at most {loose} is asked"));
+        return Err(format!(
+            "its bound {bound:e} is {times:.1} times the true error {error:e}, at most {loose} is asked"
+        ));
     }
     let mark = if tells { "" } else { "  (true error at rounding level)" };
     let grade = quantity.grade.word();

@@ -4,49 +4,50 @@ use serde::Deserialize;
 use std::path::{Path, PathBuf};
 
 /// Where a printed value may come from.
-const KINDS: [&str; 5] = ["published", "closed form", "computed twice", "common practice, no source", "from memory"];
+const KINDS: [&str; 5] =
+    ["published", "closed form", "computed twice", "common practice, no source", "from memory"];
 
 /// A file of printed values.
 #[derive(Debug, Deserialize)]
 #[serde(deny_unknown_fields)]
-pub struct Sheet {
+pub(crate) struct Sheet {
     /// A bound may be at most this many times the true error.
-    pub loose: Option<f64>,
+    pub(crate) loose: Option<f64>,
     /// For the arithmetic of the schemes: the largest relative distance. Bounds are then not looked at.
-    pub relative: Option<f64>,
+    pub(crate) relative: Option<f64>,
     /// The entries.
     #[serde(rename = "check")]
-    pub checks: Vec<Check>,
+    pub(crate) checks: Vec<Check>,
 }
 
 /// A printed value and where we compute it.
 #[derive(Debug, Deserialize)]
 #[serde(deny_unknown_fields)]
-pub struct Check {
+pub(crate) struct Check {
     /// The study beside this file, without `.md`.
-    pub study: String,
+    pub(crate) study: String,
     /// `RUN.QUANTITY`
-    pub quantity: String,
+    pub(crate) quantity: String,
     /// The value as printed.
-    pub printed: String,
+    pub(crate) printed: String,
     /// Its significant digits, counted by whoever copied it.
-    pub digits: usize,
+    pub(crate) digits: usize,
     /// The unit of the printed value, where it has one.
-    pub unit: Option<String>,
+    pub(crate) unit: Option<String>,
     /// Author, year, table, section or formula.
-    pub source: String,
+    pub(crate) source: String,
     /// One of [`KINDS`].
-    pub kind: String,
+    pub(crate) kind: String,
     /// Overrides [`Sheet::loose`].
-    pub loose: Option<f64>,
+    pub(crate) loose: Option<f64>,
     /// The reason for the override.
-    pub because: Option<String>,
+    pub(crate) because: Option<String>,
     /// The size that [`Sheet::relative`] refers to, where the value itself is much smaller than the state was.
-    pub size: Option<f64>,
+    pub(crate) size: Option<f64>,
 }
 
 /// This folder.
-pub fn folder() -> PathBuf {
+pub(crate) fn folder() -> PathBuf {
     Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/published")
 }
 
@@ -54,7 +55,7 @@ pub fn folder() -> PathBuf {
 ///
 /// # Errors
 /// What the disk said.
-pub fn names(extension: &str) -> Result<Vec<String>, String> {
+pub(crate) fn names(extension: &str) -> Result<Vec<String>, String> {
     let mut names = Vec::new();
     for entry in std::fs::read_dir(folder()).map_err(|error| error.to_string())? {
         let path = entry.map_err(|error| error.to_string())?.path();
@@ -70,7 +71,7 @@ pub fn names(extension: &str) -> Result<Vec<String>, String> {
 ///
 /// # Errors
 /// The file and what is wrong with it.
-pub fn read() -> Result<Vec<(String, Sheet)>, String> {
+pub(crate) fn read() -> Result<Vec<(String, Sheet)>, String> {
     let mut sheets = Vec::new();
     for name in names("toml")? {
         let text = std::fs::read_to_string(folder().join(format!("{name}.toml")))
@@ -82,7 +83,7 @@ pub fn read() -> Result<Vec<(String, Sheet)>, String> {
 }
 
 /// What is wrong with an entry itself, whatever we compute.
-pub fn flaws(sheet: &Sheet, check: &Check) -> Vec<String> {
+pub(crate) fn flaws(sheet: &Sheet, check: &Check) -> Vec<String> {
     let mut flaws = Vec::new();
     if !KINDS.contains(&check.kind.as_str()) {
         flaws.push(format!("`{}` is no kind of source", check.kind));
@@ -101,7 +102,9 @@ pub fn flaws(sheet: &Sheet, check: &Check) -> Vec<String> {
             flaws.push(format!("{} digits are printed, not {}", printed.digits, check.digits));
         }
         // Fewer digits than twelve would make half a unit of the last one larger than any error of ours.
-        Ok(printed) if sheet.relative.is_none() && printed.digits < 12 => flaws.push("it has too few digits".to_owned()),
+        Ok(printed) if sheet.relative.is_none() && printed.digits < 12 => {
+            flaws.push("it has too few digits".to_owned());
+        }
         Ok(_) => (),
         Err(wrong) => flaws.push(wrong),
     }
