@@ -4,8 +4,14 @@ use serde::Deserialize;
 use std::path::{Path, PathBuf};
 
 /// Where a printed value may come from.
-const KINDS: [&str; 5] =
-    ["published", "closed form", "computed twice", "common practice, no source", "from memory"];
+const KINDS: [&str; 6] = [
+    "published",
+    "closed form",
+    "computed twice",
+    "formula at 60 digits",
+    "common practice, no source",
+    "from memory",
+];
 
 /// A file of printed values.
 #[derive(Debug, Deserialize)]
