@@ -36,6 +36,8 @@ pub struct Evidence<'a> {
     pub order: u32,
     /// Size of the numbers it was computed from, to tell rounding.
     pub scale: f64,
+    /// Steps of the run; rounding of a long run is told from its square root.
+    pub steps: f64,
     /// Range of the expression over the run, to tell meshes that have parted.
     pub range: f64,
     /// How far interpolation may move it.
@@ -94,7 +96,9 @@ pub fn judge(evidence: &Evidence<'_>) -> Judgement {
     };
     let order = f64::from(evidence.order);
     let (first, second) = (q0 - q1, q1 - q2);
-    let floor = FLOOR_ULPS * f64::EPSILON * larger(evidence.scale.abs(), q0.abs());
+    // Roundings of the finest mesh, which has four times the steps, add up like a random walk.
+    let ulps = larger(FLOOR_ULPS, elementary::sqrt(4.0 * evidence.steps));
+    let floor = ulps * f64::EPSILON * larger(evidence.scale.abs(), q0.abs());
     let pattern = pattern(first, second, order, floor, &mut estimates);
     let spread = larger(larger(q0, q1), q2) - smaller(smaller(q0, q1), q2);
     let companion = evidence.corrected.map(|corrected| q0 - corrected);
@@ -238,6 +242,7 @@ mod tests {
             corrected,
             order,
             scale: 1.0,
+            steps: 100.0,
             range: 10.0,
             interpolation: 0.0,
             rounding: 0.0,

@@ -115,10 +115,15 @@ fn every_part_knows_its_text() {
     let source = "a*(x + y)/max(x, (y - 1)*2) - sin(-(x))";
     let mut graph = Graph::default();
     let node = lower(&text(source), &mut graph, &Names, &mut Faults::new()).unwrap();
-    let mut parts: Vec<&str> =
-        graph.reachable(&[node]).iter().filter_map(|id| graph.origin(*id)).map(|(_, text)| text.as_str()).collect();
+    let mut parts: Vec<&str> = graph
+        .reachable(&[node])
+        .iter()
+        .filter_map(|id| graph.origin(*id))
+        .map(|(_, text)| text.as_str())
+        .collect();
     parts.sort_unstable();
-    for part in ["a*(x + y)", "x + y", "max(x, (y - 1)*2)", "(y - 1)*2", "y - 1", "sin(-(x))", "-(x)", source] {
+    for part in ["a*(x + y)", "x + y", "max(x, (y - 1)*2)", "(y - 1)*2", "y - 1", "sin(-(x))", "-(x)", source]
+    {
         assert!(parts.contains(&part), "{part} is not among {parts:?}");
     }
 }

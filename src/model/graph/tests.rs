@@ -140,5 +140,8 @@ fn powers_fold_to_the_bits_that_run_time_gives() {
     let (x, base, n) = (graph.state(0), graph.constant(1.1), graph.constant(13.0));
     let live = graph.binary(Binary::Power, x, n);
     let folded = graph.binary(Binary::Power, base, n);
-    assert_eq!(value(&graph, live, 0.0, [1.1, 0.0]).to_bits(), graph.constant_value(folded).unwrap().to_bits());
+    assert_eq!(
+        value(&graph, live, 0.0, [1.1, 0.0]).to_bits(),
+        graph.constant_value(folded).unwrap().to_bits()
+    );
 }
