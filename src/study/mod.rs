@@ -4,8 +4,6 @@
 //! quantities, and nothing of expressions: a [`Text`] that holds one is handed on as it stands.
 
 pub mod block;
-mod quick;
-pub use quick::read;
 
 use crate::fault::Span;
 use block::Blocks;
