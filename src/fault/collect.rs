@@ -1,5 +1,7 @@
 //! The value of a fault, and the list that all stages add to.
 
+use std::collections::BTreeSet;
+
 use super::Span;
 
 /// How bad a fault is.
@@ -73,10 +75,19 @@ impl Fault {
     }
 }
 
+/// Faults kept at most: a hostile study shall not fill the memory with them.
+const MOST_KEPT: usize = 10_000;
+
 /// The faults found so far.
+///
+/// Each is kept once. Beyond 10,000 they are counted only.
 #[derive(Clone, Debug, Default)]
 pub struct Faults {
     list: Vec<Fault>,
+    /// What tells faults apart, so that adding one takes the same time however many there are.
+    seen: BTreeSet<(Span, &'static str, String)>,
+    unkept: usize,
+    errors: usize,
 }
 
 impl Faults {
@@ -84,15 +95,19 @@ impl Faults {
     pub fn new() -> Self {
         Self::default()
     }
-    /// Adds one.
+    /// Adds one, unless one of the same place, code and message is there.
     pub fn add(&mut self, fault: Fault) {
-        if !self.list.contains(&fault) {
+        if self.list.len() >= MOST_KEPT {
+            self.unkept += 1;
+            self.errors += usize::from(fault.severity == Severity::Error);
+        } else if self.seen.insert((fault.at, fault.code, fault.message.clone())) {
+            self.errors += usize::from(fault.severity == Severity::Error);
             self.list.push(fault);
         }
     }
     /// Whether one of them is an error.
     pub fn any_error(&self) -> bool {
-        self.list.iter().any(|fault| fault.severity == Severity::Error)
+        self.errors() > 0
     }
     /// Whether there is none at all.
     pub fn is_empty(&self) -> bool {
@@ -100,12 +115,34 @@ impl Faults {
     }
     /// Number of errors.
     pub fn errors(&self) -> usize {
-        self.list.iter().filter(|fault| fault.severity == Severity::Error).count()
+        self.errors
     }
-    /// All of them by file, place and code.
+    /// Number of faults of all severities.
+    pub fn count(&self) -> usize {
+        self.list.len() + self.unkept
+    }
+    /// Those that were kept by file, place and code.
     pub fn sorted(&self) -> Vec<&Fault> {
         let mut list: Vec<&Fault> = self.list.iter().collect();
         list.sort_by(|a, b| (a.at, a.code, &a.message).cmp(&(b.at, b.code, &b.message)));
         list
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_fault_is_kept_once_and_a_flood_is_counted() {
+        let mut faults = Faults::new();
+        for i in 0..200_000 {
+            let at = Span { start: i / 2, end: i / 2, ..Span::default() };
+            faults.add(Fault::warning("odd", at, "odd"));
+        }
+        faults.add(Fault::error("bad", Span::default(), "bad"));
+        assert_eq!(faults.sorted().len(), MOST_KEPT);
+        assert_eq!(faults.errors(), 1);
+        assert!(faults.any_error() && faults.count() > 100_000);
     }
 }

@@ -4,6 +4,22 @@
 //! quantities, and nothing of expressions: a [`Text`] that holds one is handed on as it stands.
 
 pub mod block;
+pub mod source;
+
+mod fence;
+mod fields;
+mod front;
+mod link;
+mod name;
+mod node;
+mod prose;
+mod quote;
+mod read;
+mod refer;
+mod slip;
+mod yaml;
+
+pub use read::read;
 
 use crate::fault::Span;
 use block::Blocks;
@@ -24,6 +40,14 @@ impl Text {
     /// The place of bytes `from..to` of the text, or of the whole where bytes do not match.
     pub fn part(&self, from: usize, to: usize) -> Span {
         if self.exact { self.at.part(from, to) } else { self.at }
+    }
+    /// The text of bytes `from..to` without surrounding blanks, with its place.
+    #[must_use]
+    pub fn cut(&self, from: usize, to: usize) -> Text {
+        let piece = self.value.get(from..to).unwrap_or_default();
+        let from = from + piece.len() - piece.trim_start().len();
+        let piece = piece.trim();
+        Text { value: piece.to_string(), at: self.part(from, from + piece.len()), exact: self.exact }
     }
 }
 

@@ -2,6 +2,10 @@
 //!
 //! Units are text for now; their algebra (dimension, table of factors) belongs in this folder.
 
+mod read;
+
+pub use read::{Parts, is_value, parts, read_value};
+
 use crate::fault::Span;
 
 /// A number with its unit and place: `9.80665 m/s^2`.

@@ -3,6 +3,7 @@
 pub mod chart;
 pub mod criteria;
 pub mod model;
+pub mod quantity;
 pub mod run;
 pub mod table;
 
