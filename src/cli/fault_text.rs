@@ -13,6 +13,8 @@ pub enum IssueError {
     Study(Box<(Faults, Sources)>),
     /// The file cannot be taken for a study at all; says why.
     Unreadable(String),
+    /// A template of the user's is wrong; says which, where and how.
+    Template(String),
     /// The machine failed.
     Machine(Failure),
     /// A defect of ours; says what is known of it.
@@ -46,6 +48,10 @@ pub(super) fn tell(error: &IssueError, shown: &str, console: &Console) -> Status
         }
         IssueError::Unreadable(why) => {
             console.fault(&format!("{shown}: {why}"));
+            Status::Wrong
+        }
+        IssueError::Template(why) => {
+            console.fault(&format!("{shown}: a template is wrong: {why}"));
             Status::Wrong
         }
         IssueError::Machine(failure) => {

@@ -112,10 +112,9 @@ pub(super) fn issue(asked: &Issue, console: &Console) -> Status {
         });
     }
     if outcomes.iter().any(Result::is_ok)
-        && let Err(failure) = write_register(&options.out)
+        && let Err(error) = write_register(&options.out, &options.settings)
     {
-        console.failure(&failure);
-        status = Status::Failed;
+        status = status.worst(tell(&error, "register", console));
     }
     status
 }
@@ -245,11 +244,9 @@ fn summarise(found: &Found, issued: &Issued, console: &Console) -> Status {
     if issued.verdicts.out_of_order == 0 { Status::Well } else { Status::NotInOrder }
 }
 
-fn write_register(out: &Path) -> Result<(), Failure> {
-    match stages::register(&register::collect(out)?) {
-        Some(page) => write::file(&out.join("index.html"), page.as_bytes()),
-        None => Ok(()),
-    }
+fn write_register(out: &Path, settings: &Settings) -> Result<(), IssueError> {
+    let page = stages::register(&register::collect(out)?, settings)?;
+    Ok(write::file(&out.join("index.html"), page.as_bytes())?)
 }
 
 #[cfg(test)]

@@ -4,11 +4,12 @@ use super::fault_text::IssueError;
 use super::find::Found;
 use super::pipeline::{self, Checked};
 use crate::bound::{Outcome, Quantity, RunOutcome, Steps};
-use crate::fault::{Faults, Sources};
+use crate::fault::{Failure, Faults, Sources};
 use crate::model::Model;
-use crate::record::digest::FileDigest;
+use crate::record::digest::{FileDigest, Was};
 use crate::record::json::StepControl;
 use crate::record::register::Entry;
+use crate::report::{self, RegisterEntry, ReportInputs, Templates};
 use crate::scheme::stability::Stability;
 use crate::scheme::{self, Scheme, control, order};
 use crate::study::Study;
@@ -77,7 +78,8 @@ pub fn execute(
     match outcome {
         Some(outcome) if !faults.any_error() => {
             let Checked { study, models, .. } = checked;
-            Ok(Executed { study, sources, models, outcome, faults, read: Vec::new() })
+            let (_, read) = templates(settings)?;
+            Ok(Executed { study, sources, models, outcome, faults, read })
         }
         _ => Err(wrong(faults, sources)),
     }
@@ -92,27 +94,68 @@ fn wrong(faults: Faults, sources: Sources) -> IssueError {
     }
 }
 
+/// The templates: built in, with those of the user's folder laid over. Returns the files read beside.
+///
+/// # Errors
+/// [`IssueError`] where the folder cannot be read or a template in it is wrong.
+pub fn templates(settings: &Settings) -> Result<(Templates, Vec<FileDigest>), IssueError> {
+    let Some(folder) = &settings.templates else {
+        let built_in = Templates::built_in().map_err(|error| IssueError::Defect(error.to_string()))?;
+        return Ok((built_in, Vec::new()));
+    };
+    let failed = |cause| Failure::new(format!("cannot read the templates in {}", folder.display()), cause);
+    let mut names: Vec<_> = std::fs::read_dir(folder)
+        .and_then(Iterator::collect::<Result<Vec<_>, _>>)
+        .map_err(failed)?
+        .into_iter()
+        .filter(|entry| entry.path().is_file())
+        .map(|entry| entry.file_name().to_string_lossy().into_owned())
+        .filter(|name| !name.starts_with('.'))
+        .collect();
+    names.sort();
+    let mut files = Vec::new();
+    let mut digests = Vec::new();
+    for name in names {
+        let text = std::fs::read_to_string(folder.join(&name)).map_err(failed)?;
+        digests.push(FileDigest::of(Was::Read, format!("templates/{name}"), text.as_bytes()));
+        files.push((name, text));
+    }
+    let templates = Templates::overlaid(folder, &files).map_err(|error| IssueError::Template(error.to_string()))?;
+    Ok((templates, digests))
+}
+
 /// The report as HTML. `files` are the digests of the study and of all files read and written but the report
 /// and the record.
 ///
 /// # Errors
 /// [`IssueError`] where a template of the user's is wrong or cannot be read.
-pub fn report(
-    _executed: &Executed,
-    _files: &[FileDigest],
-    _settings: &Settings,
-) -> Result<String, IssueError> {
-    Err(not_connected())
+pub fn report(executed: &Executed, files: &[FileDigest], settings: &Settings) -> Result<String, IssueError> {
+    let (templates, _) = templates(settings)?;
+    let was = |was: Was| if was == Was::Read { "read" } else { "written" };
+    let digests: Vec<(String, String, String)> =
+        files.iter().map(|file| (file.path.clone(), was(file.was).to_owned(), file.sha256.clone())).collect();
+    let at = executed.study.front.title.at;
+    let tool = format!("halfstep {}, numerics {}", env!("CARGO_PKG_VERSION"), crate::record::NUMERICS);
+    let inputs = ReportInputs {
+        study: &executed.study,
+        models: &executed.models,
+        outcome: &executed.outcome,
+        text: &executed.sources.file(at.file).text,
+        digests: &digests,
+        tool: &tool,
+    };
+    report::compose(&inputs, &templates).map_err(|error| {
+        if settings.templates.is_some() {
+            IssueError::Template(error.to_string())
+        } else {
+            IssueError::Defect(error.to_string())
+        }
+    })
 }
 
 /// The text of a quantity as the report shows it: value, bound and unit.
 pub fn shown(quantity: &Quantity) -> String {
-    let unit = quantity.unit.as_deref().map_or_else(String::new, |unit| format!(" {unit}"));
-    match (quantity.value, quantity.bound) {
-        (Some(value), Some(bound)) => format!("{value} ± {bound}{unit}"),
-        (Some(value), None) => format!("{value}{unit}, no bound"),
-        (None, _) => "withheld".to_owned(),
-    }
+    report::shown(quantity)
 }
 
 /// How an adaptive run chose its steps; `None` for a fixed step.
@@ -134,9 +177,33 @@ pub fn step_control(run: &RunOutcome) -> Option<StepControl> {
     })
 }
 
-/// The register as HTML; `None` while there is none.
-pub fn register(_entries: &[Entry]) -> Option<String> {
-    None
+/// The register as HTML.
+///
+/// # Errors
+/// [`IssueError`] where the template is wrong.
+pub fn register(entries: &[Entry], settings: &Settings) -> Result<String, IssueError> {
+    let (templates, _) = templates(settings)?;
+    let list: Vec<RegisterEntry> = entries
+        .iter()
+        .map(|entry| {
+            let count = |verdict: &str| entry.verdicts.iter().filter(|found| *found == verdict).count();
+            let weakest = ["unbounded", "indicated", "converged", "corroborated"]
+                .into_iter()
+                .find(|grade| entry.grades.iter().any(|found| found == grade));
+            RegisterEntry {
+                name: entry.name.clone(),
+                title: entry.title.clone(),
+                number: entry.number.clone().unwrap_or_default(),
+                revision: entry.revision.clone().unwrap_or_default(),
+                date: entry.date.clone().unwrap_or_default(),
+                met: count("met"),
+                not_met: count("not met"),
+                undecided: count("undecided"),
+                weakest: weakest.unwrap_or_default().to_owned(),
+            }
+        })
+        .collect();
+    report::compose_register(&list, &templates).map_err(|error| IssueError::Template(error.to_string()))
 }
 
 /// All schemes in the order in which they are listed.
@@ -167,8 +234,4 @@ pub fn properties(scheme: &Scheme) -> Vec<String> {
         stable("Stable with the embedded weights", b_hat);
     }
     lines
-}
-
-fn not_connected() -> IssueError {
-    IssueError::Defect("this build has no stages between the text of a study and its report".to_owned())
 }
