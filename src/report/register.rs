@@ -36,7 +36,14 @@ struct RegisterView {
 #[derive(Serialize)]
 struct FolderView {
     name: String,
-    entries: Vec<RegisterEntry>,
+    entries: Vec<LineView>,
+}
+
+#[derive(Serialize)]
+struct LineView {
+    link: String,
+    #[serde(flatten)]
+    entry: RegisterEntry,
 }
 
 /// Writes the register as HTML, grouped by folder; `entries` come in the order of their names.
@@ -47,10 +54,34 @@ pub fn compose_register(entries: &[RegisterEntry], templates: &Templates) -> Res
     let mut folders: Vec<FolderView> = Vec::new();
     for entry in entries {
         let folder = entry.name.rsplit_once('/').map_or("", |(folder, _)| folder);
+        let line = LineView { link: format!("{}/report.html", percent(&entry.name)), entry: entry.clone() };
         match folders.iter_mut().find(|known| known.name == folder) {
-            Some(known) => known.entries.push(entry.clone()),
-            None => folders.push(FolderView { name: folder.to_owned(), entries: vec![entry.clone()] }),
+            Some(known) => known.entries.push(line),
+            None => folders.push(FolderView { name: folder.to_owned(), entries: vec![line] }),
         }
     }
     templates.render("register.html", &RegisterView { folders, count: entries.len() })
+}
+
+/// A path as part of an address: all but unreserved characters and `/` percent-encoded (RFC 3986, 2.1).
+fn percent(path: &str) -> String {
+    let mut text = String::new();
+    for byte in path.bytes() {
+        if byte.is_ascii_alphanumeric() || b"-._~/".contains(&byte) {
+            text.push(char::from(byte));
+        } else {
+            text.push_str(&format!("%{byte:02X}"));
+        }
+    }
+    text
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn paths_become_addresses() {
+        assert_eq!(percent("deep/pump & valve"), "deep/pump%20%26%20valve");
+    }
 }
