@@ -118,7 +118,7 @@ fn widen(low: f64, high: f64, tight: bool) -> (f64, f64) {
         let room = if size > 0.0 { 0.1 * size } else { 1.0 };
         return (low - room, high + room);
     }
-    if tight { (low, high) } else { (low - 0.05 * span, high + 0.05 * span) }
+    if tight { (low, high) } else { (low - 0.07 * span, high + 0.07 * span) }
 }
 
 /// 1, 2 or 5 times a power of ten, so that `span` holds about `count` of them.

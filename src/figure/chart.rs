@@ -166,8 +166,10 @@ pub fn draw(chart: &Chart) -> String {
     for (limit, label) in limits {
         let (_, height) = frame.place((low.0, *limit));
         surface.line(&[(frame.left, height), (frame.right, height)], Ink::Limit, 1.4);
-        let above = height > frame.top + 18.0;
-        let place = if above { (frame.left + 6.0, height - 9.0) } else { (frame.left + 6.0, height + 9.0) };
+        // On the side away from the lines, where there is room for it.
+        let middle = 0.5 * (low.1 + high.1);
+        let above = *limit > middle && height > frame.top + 13.0;
+        let place = (frame.left + 6.0, if above { height - 8.0 } else { height + 9.0 });
         surface.text(label, place, Ink::Limit, SMALL, Anchor::Right);
     }
     let corners = ((frame.left, frame.top), (frame.right, frame.bottom));

@@ -35,6 +35,9 @@ impl Shown {
     }
 }
 
+/// Most significant digits of a value: a bound at rounding level would show many more than anyone reads. The record
+/// has them all.
+const MOST_DIGITS: i32 = 10;
 /// Places before the decimal mark above which a common power of ten is written.
 const MOST_WHOLE: i32 = 7;
 /// Places behind the decimal mark beyond which a common power of ten is written.
@@ -43,7 +46,8 @@ const MOST_BROKEN: i32 = 7;
 /// A value and its bound: the bound to two significant digits, the value to the same place.
 ///
 /// The bound is rounded up, and takes in what rounding the value moves, so that the interval as printed contains
-/// the interval as computed. Source of the two digits: JCGM 100:2008 (GUM), 7.2.6.
+/// the interval as computed. At most ten digits are shown: a tighter bound is then rounded up to the last of them.
+/// Source of the two digits: JCGM 100:2008 (GUM), 7.2.6.
 ///
 /// # Shapes and units
 /// `value` and `bound` are finite, `bound >= 0`.
@@ -52,6 +56,10 @@ pub fn shown(value: f64, bound: f64) -> Shown {
         return exact(value);
     }
     let mut place = decade(bound) - 1;
+    let coarsest = decade(value.abs()) - MOST_DIGITS + 1;
+    if value != 0.0 && place < coarsest {
+        return shown_at(value, bound, coarsest);
+    }
     loop {
         let rounded = round_to(value, place);
         let moved = (rounded.1 - value).abs();
@@ -63,6 +71,19 @@ pub fn shown(value: f64, bound: f64) -> Shown {
         }
         place += 1;
     }
+}
+
+/// A value and its bound to a given place, as in a column whose numbers share one: fewer digits than the bound
+/// supports may come of it, never more. The bound is rounded up.
+pub fn shown_at(value: f64, bound: f64, place: i32) -> Shown {
+    if bound > 0.0 && decade(bound) - 1 > place {
+        return shown(value, bound);
+    }
+    let rounded = round_to(value, place);
+    let moved = (rounded.1 - value).abs();
+    let whole = if moved == 0.0 { bound } else { (bound + moved) * (1.0 + 4.0 * f64::EPSILON) };
+    let digits = if whole == 0.0 { 0 } else { ceil_to(whole, place) };
+    write(&rounded.0, digits, place, larger(rounded.1.abs(), bound))
 }
 
 /// A value without a bound, to three significant digits.
@@ -228,8 +249,8 @@ mod tests {
                 v - b <= value - bound + slack && v + b >= value + bound - slack,
                 "{value} {bound} {text:?}"
             );
-            // Not looser than the two digits ask for.
-            assert!(b <= 1.16 * bound + 1e-300, "{value} {bound} {text:?}");
+            // Not looser than the two digits ask for, or the tenth digit of the value.
+            assert!(b <= 1.16 * bound + 2e-9 * value.abs() + 1e-300, "{value} {bound} {text:?}");
         }
     }
 

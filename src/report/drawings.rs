@@ -115,11 +115,11 @@ fn curves(
     });
     let y_title = block.y_axis.as_ref().map_or_else(
         || axis_title(about.as_deref().unwrap_or(""), y_name, y_unit.as_deref()),
-        |title| title.value.clone(),
+        |title| named(&title.value, y_unit.as_deref()),
     );
     let x_title = block.x_axis.as_ref().map_or_else(
         || axis_title(if against == "t" { "Time" } else { "" }, against, x_unit.as_deref()),
-        |title| title.value.clone(),
+        |title| named(&title.value, x_unit.as_deref()),
     );
     let limits = limits(lines, outcome, y_name);
     let list: Vec<&str> = series.iter().map(|series| series.label.as_str()).collect();
@@ -135,6 +135,14 @@ fn curves(
         over_time: against == "t",
     };
     Some(Drawing { svg: chart::draw(&chart), note: notes.join("; ") })
+}
+
+/// A title as the study gives it, with the unit where it names none.
+fn named(title: &str, unit: Option<&str>) -> String {
+    match unit {
+        Some(unit) if !title.contains('/') && !title.contains('(') => format!("{title} / {unit}"),
+        _ => title.to_owned(),
+    }
 }
 
 /// `Level z / m`: what, symbol, unit, as ISO 80000-1 advises.

@@ -34,6 +34,11 @@ pub(super) fn parts(value: Option<f64>, bound: Option<f64>, whole: bool, unit: O
         (Some(value), None) => digits::rough(value),
         (None, _) => Shown { value: "\u{2013}".to_owned(), bound: String::new(), exponent: None },
     };
+    split(shown, unit)
+}
+
+/// The parts of a number that is text already.
+pub(super) fn split(shown: Shown, unit: Option<&str>) -> Parts {
     let power = shown.exponent.map_or_else(String::new, |n| format!("× 10{} ", digits::superscript(n)));
     Parts { value: shown.value, bound: shown.bound, unit: format!("{power}{}", unit.unwrap_or("")) }
 }

@@ -6,14 +6,15 @@ use pulldown_cmark::{CowStr, Event, HeadingLevel, Tag, TagEnd, html};
 
 use super::drawings::{self, Drawing};
 use super::ledger::{line, overrides, quantity_id, span_text, steps_text};
-use super::number::{align, parts, shown, value_alone};
+use super::number::{align, parts, shown, split, value_alone};
 use super::templates::{TemplateError, Templates};
 use super::view::{
     CellView, ChartView, CriteriaView, CriterionView, EquationView, HeadView, ModelView, QuoteView, RunView,
     StateView, TableView,
 };
-use crate::bound::{Grade, Outcome};
-use crate::figure::digits::{rough, size};
+use crate::arithmetic::larger;
+use crate::bound::{Grade, Outcome, RowColumn};
+use crate::figure::digits::{decade, rough, shown_at, size};
 use crate::model::Model;
 use crate::study::block::chart::ChartBlock;
 use crate::study::block::criteria::{CriteriaBlock, Verdict};
@@ -86,7 +87,7 @@ impl Prose<'_> {
         let target = quantity_id(&run.name, &quantity.name);
         let id = format!("cite-{}-{}", target, list.len() + 1);
         list.push(id.clone());
-        self.templates.render(
+        let html = self.templates.render(
             "quote.html",
             &QuoteView {
                 id,
@@ -95,7 +96,9 @@ impl Prose<'_> {
                 grade: quantity.grade.word().to_owned(),
                 weak: quantity.grade >= Grade::Indicated,
             },
-        )
+        )?;
+        // The end of the template's file is no blank in the sentence.
+        Ok(html.trim().to_owned())
     }
 
     fn model(&self, i: usize) -> Result<String, TemplateError> {
@@ -209,12 +212,21 @@ impl Prose<'_> {
                 unit: column.unit.clone().unwrap_or_default(),
             });
         }
+        // One place for a whole column: that which its largest bound supports.
+        let place_of = |column: &RowColumn| {
+            let largest = column.bounds.iter().flatten().fold(0.0, |largest, bound| larger(largest, *bound));
+            (largest > 0.0).then(|| decade(largest) - 1)
+        };
+        let places: Vec<Option<i32>> = wanted.iter().map(|column| place_of(column)).collect();
         let stride = rows.times.len().div_ceil(MOST_ROWS).max(1);
         for k in (0..rows.times.len()).step_by(stride) {
             let time = CellView { value: size_plain(rows.times[k]), bound: String::new(), grade: String::new() };
             let mut cells = vec![time];
-            for column in &wanted {
-                let number = parts(Some(column.values[k]), column.bounds[k], false, None);
+            for (column, place) in wanted.iter().zip(&places) {
+                let number = match (column.bounds[k], place) {
+                    (Some(bound), Some(place)) => split(shown_at(column.values[k], bound, *place), None),
+                    (bound, _) => parts(Some(column.values[k]), bound, false, None),
+                };
                 cells.push(CellView {
                     value: format!("{}{}", number.value, tail(&number.unit)),
                     bound: number.bound,

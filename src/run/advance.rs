@@ -175,6 +175,7 @@ impl<'p> Runner<'p> {
             self.flips_here = 0;
             let mut a = nominal.point(interval);
             let end = nominal.point(interval + 1);
+            let reach = (end - a) / parts as f64;
             let mut ahead = next;
             loop {
                 let cut = expected.get(ahead).filter(|cut| cut.interval == interval);
@@ -186,7 +187,7 @@ impl<'p> Runner<'p> {
                         // The switch was passed a little earlier than on the coarser mesh.
                         continue;
                     }
-                    self.go_to(target, guide, interval, expected, observers)?;
+                    self.go_to(target, guide.map(|cut| (cut, reach)), interval, expected, observers)?;
                 }
                 a = b;
                 if cut.is_none() {
@@ -202,11 +203,12 @@ impl<'p> Runner<'p> {
         Ok(self.finish())
     }
 
-    /// Steps to `target`, cutting at every switch on the way; with a guide, to the switch that it expects.
+    /// Steps to `target`, cutting at every switch on the way; with a guide, to the switch that it expects, at most so
+    /// far beyond `target`.
     fn go_to(
         &mut self,
         target: f64,
-        guide: Option<&Cut>,
+        guide: Option<(&Cut, f64)>,
         interval: u64,
         expected: &[Cut],
         observers: &mut [&mut dyn Observer],
@@ -216,8 +218,9 @@ impl<'p> Runner<'p> {
             self.try_step(target)?;
             match self.first_flip() {
                 None => {
-                    if let Some(cut) = guide {
-                        let further = target + 0.5 * (target - start);
+                    if let Some((cut, reach)) = guide {
+                        // The part before the cut may be much shorter than the steps around it.
+                        let further = target + larger(0.5 * (target - start), reach);
                         if further <= self.plan.until
                             && self.try_step(further).is_ok()
                             && let Some((theta, switch)) = self.first_flip()
@@ -226,13 +229,13 @@ impl<'p> Runner<'p> {
                             self.cut_at(theta, switch, interval, expected, observers)?;
                             return Ok(());
                         }
-                        self.ran.irregular = true;
+                        // It lies still farther on and will be met there.
                         self.try_step(target)?;
                     }
                     self.accept(false, observers)?;
                 }
                 Some((theta, switch)) => {
-                    let wanted = guide.is_some_and(|cut| self.watched[switch] == cut.switch);
+                    let wanted = guide.is_some_and(|(cut, _)| self.watched[switch] == cut.switch);
                     self.cut_at(theta, switch, interval, expected, observers)?;
                     if wanted {
                         return Ok(());
