@@ -40,7 +40,7 @@ impl Fault {
         Fault {
             severity: Severity::Error,
             code,
-            message: message.into(),
+            message: tidy(&message.into(), LONGEST_MESSAGE),
             at,
             label: String::new(),
             also: Vec::new(),
@@ -58,35 +58,61 @@ impl Fault {
     /// With a label beside the marked text.
     #[must_use]
     pub fn label(mut self, label: impl Into<String>) -> Self {
-        self.label = label.into();
+        self.label = tidy(&label.into(), LONGEST_QUOTE);
         self
     }
     /// With another place that belongs to it.
     #[must_use]
     pub fn also(mut self, at: Span, label: impl Into<String>) -> Self {
-        self.also.push((at, label.into()));
+        self.also.push((at, tidy(&label.into(), LONGEST_QUOTE)));
         self
     }
     /// With what to do.
     #[must_use]
     pub fn help(mut self, help: impl Into<String>) -> Self {
-        self.help = Some(help.into());
+        self.help = Some(tidy(&help.into(), LONGEST_MESSAGE));
         self
     }
 }
 
-/// Faults kept at most: a hostile study shall not fill the memory with them.
+/// A message or help is cut behind this many characters.
+const LONGEST_MESSAGE: usize = 400;
+/// A text of a study inside a message is cut behind this many characters.
+const LONGEST_QUOTE: usize = 60;
+
+/// A text of a study, short enough for a message and on one line.
+pub fn clip(text: &str) -> String {
+    tidy(text, LONGEST_QUOTE)
+}
+
+/// A text on one line, cut behind `most` characters, without what could steer a terminal: control characters
+/// and changes of the direction of writing.
+fn tidy(text: &str, most: usize) -> String {
+    let mut chars = text.chars();
+    let steers = |c: char| {
+        c.is_control()
+            || matches!(c, '\u{200e}' | '\u{200f}' | '\u{202a}'..='\u{202e}' | '\u{2066}'..='\u{2069}')
+    };
+    let mut out: String = chars.by_ref().take(most).map(|c| if steers(c) { ' ' } else { c }).collect();
+    if chars.next().is_some() {
+        out.push_str("...");
+    }
+    out
+}
+
+/// Errors kept at most, and as many warnings and notes: a hostile study shall not fill the memory with them.
 const MOST_KEPT: usize = 10_000;
 
 /// The faults found so far.
 ///
-/// Each is kept once. Beyond 10,000 they are counted only.
+/// Each is kept once. Beyond 10,000 errors, and 10,000 warnings and notes, they are counted only.
 #[derive(Clone, Debug, Default)]
 pub struct Faults {
     list: Vec<Fault>,
     /// What tells faults apart, so that adding one takes the same time however many there are.
     seen: BTreeSet<(Span, &'static str, String)>,
     unkept: usize,
+    kept_errors: usize,
     errors: usize,
 }
 
@@ -97,11 +123,14 @@ impl Faults {
     }
     /// Adds one, unless one of the same place, code and message is there.
     pub fn add(&mut self, fault: Fault) {
-        if self.list.len() >= MOST_KEPT {
+        let is_error = fault.severity == Severity::Error;
+        let kept = if is_error { self.kept_errors } else { self.list.len() - self.kept_errors };
+        if kept >= MOST_KEPT {
             self.unkept += 1;
-            self.errors += usize::from(fault.severity == Severity::Error);
+            self.errors += usize::from(is_error);
         } else if self.seen.insert((fault.at, fault.code, fault.message.clone())) {
-            self.errors += usize::from(fault.severity == Severity::Error);
+            self.errors += usize::from(is_error);
+            self.kept_errors += usize::from(is_error);
             self.list.push(fault);
         }
     }
@@ -134,6 +163,13 @@ mod tests {
     use super::*;
 
     #[test]
+    fn what_could_steer_a_terminal_is_taken_out() {
+        let fault = Fault::error("odd", Span::default(), "a\u{1b}[31m\nb\u{202e}c").help("x".repeat(5000));
+        assert_eq!(fault.message, "a [31m b c");
+        assert!(fault.help.unwrap().len() < 500);
+    }
+
+    #[test]
     fn a_fault_is_kept_once_and_a_flood_is_counted() {
         let mut faults = Faults::new();
         for i in 0..200_000 {
@@ -141,7 +177,7 @@ mod tests {
             faults.add(Fault::warning("odd", at, "odd"));
         }
         faults.add(Fault::error("bad", Span::default(), "bad"));
-        assert_eq!(faults.sorted().len(), MOST_KEPT);
+        assert_eq!(faults.sorted().len(), MOST_KEPT + 1);
         assert_eq!(faults.errors(), 1);
         assert!(faults.any_error() && faults.count() > 100_000);
     }

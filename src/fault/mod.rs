@@ -8,7 +8,7 @@ mod collect;
 mod place;
 mod show;
 
-pub use collect::{Fault, Faults, Severity};
+pub use collect::{Fault, Faults, Severity, clip};
 pub use place::{FileId, SourceFile, Sources, Span};
 pub use show::{nearest, show};
 

@@ -14,14 +14,21 @@ const SAME_PIECE: usize = 100;
 const LONGEST_NAME: usize = 64;
 
 /// All faults as text, sorted by place, the line quoted and the fault underlined; at most `most`, then a
-/// count of the rest. `colour` asks for ANSI colours.
+/// count of the rest, errors before warnings where not all can be shown. `colour` asks for ANSI colours.
 ///
 /// The column counts characters. A long line is cut around the marked text; a text of several lines is
 /// marked on its first one.
 pub fn show(faults: &Faults, sources: &Sources, most: usize, colour: bool) -> String {
     let renderer = if colour { Renderer::styled() } else { Renderer::plain() };
     let mut out = String::new();
-    for fault in faults.sorted().into_iter().take(most) {
+    let mut list = faults.sorted();
+    if list.len() > most {
+        // A flood of warnings must not hide an error.
+        list.sort_by_key(|fault| fault.severity);
+        list.truncate(most);
+        list.sort_by_key(|fault| (fault.at, fault.code));
+    }
+    for fault in list {
         out.push_str(&show_one(fault, sources, &renderer));
         out.push_str("\n\n");
     }
@@ -271,6 +278,9 @@ mod tests {
         let out = show(&faults, &sources, 2, false);
         assert!(out.find("letter 0").unwrap() < out.find("letter 1").unwrap());
         assert!(!out.contains("letter 2") && out.ends_with("and 2 more faults\n"), "{out}");
+        faults.add(Fault::error("bad", Span::new(file, 5, 6), "letter 5"));
+        let out = show(&faults, &sources, 2, false);
+        assert!(out.find("letter 0").unwrap() < out.find("letter 5").unwrap());
     }
 
     #[test]

@@ -2,8 +2,7 @@
 
 use super::Text;
 use super::name::check_name;
-use super::slip::clip;
-use crate::fault::{Fault, Faults, FileId, Span, nearest};
+use crate::fault::{Fault, Faults, FileId, Span, clip, nearest};
 
 /// The kinds of block.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -38,8 +37,8 @@ pub(super) enum Fence {
     Block { kind: Kind, name: Option<Text>, head: Span },
     /// Code to show as it is.
     Code,
-    /// One of ours with a fault, which was added.
-    Refused,
+    /// One of ours with a fault, which was added; what it likely is, so that no reference to it is a fault too.
+    Refused { likely: Option<(Kind, String)> },
 }
 
 impl Kind {
@@ -87,7 +86,7 @@ pub(super) fn classify(info: &Text, faults: &mut Faults) -> Fence {
             Fault::error("missing-name", info.at, format!("the {word} has no name"))
                 .help(format!("write `{word} NAME`")),
         );
-        return Fence::Refused;
+        return Fence::Refused { likely: None };
     };
     let start = name.as_ptr() as usize - info.value.as_ptr() as usize;
     let name = info.cut(start, start + name.len());
@@ -98,10 +97,10 @@ pub(super) fn classify(info: &Text, faults: &mut Faults) -> Fence {
             Fault::error("bad-name", info.part(start, info.value.len()), message)
                 .help("a name is one word: join its words by `-` or `_`"),
         );
-        return Fence::Refused;
+        return Fence::Refused { likely: Some((kind, name.value)) };
     }
     if !check_name(&name, &format!("a {word}"), faults) {
-        return Fence::Refused;
+        return Fence::Refused { likely: Some((kind, name.value)) };
     }
     Fence::Block { kind, name: Some(name), head: info.at }
 }
@@ -122,7 +121,9 @@ fn misspelt(info: &Text, first: &str, faults: &mut Faults) -> Fence {
     faults.add(Fault::error("unknown-kind", info.part(0, first.len()), message).help(format!(
         "write `{likely} NAME` if that is meant; a fence to be shown as it is can start with `text`"
     )));
-    Fence::Refused
+    let name = info.value.split_whitespace().nth(1);
+    let kind = KINDS.iter().find(|(word, _)| *word == likely).map(|(_, kind)| *kind);
+    Fence::Refused { likely: kind.zip(name.map(str::to_string)) }
 }
 
 #[cfg(test)]
@@ -138,7 +139,7 @@ mod tests {
                 format!("{} {}", kind.word(), name.map_or_else(|| "-".to_string(), |name| name.value))
             }
             Fence::Code => "code".to_string(),
-            Fence::Refused => {
+            Fence::Refused { .. } => {
                 let fault = faults.sorted()[0].clone();
                 format!("{}: {}", fault.code, &input[fault.at.start..fault.at.end])
             }

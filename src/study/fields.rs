@@ -4,9 +4,11 @@
 use super::Text;
 use super::name::near_help;
 use super::node::{Content, Node, Scalar, Sort};
-use super::slip::clip;
-use crate::fault::{Fault, Faults, Span};
+use crate::fault::{Fault, Faults, Span, clip};
 use crate::unit::{Value, read_value};
+
+/// What to do about a text that was cut at a comma.
+const COMMA: &str = "inside brackets a comma ends a text: put a text that contains one in quotes, and write numbers with a point";
 
 /// The entries of a mapping whose keys are known.
 pub(super) struct Fields<'a> {
@@ -26,12 +28,15 @@ impl<'a> Fields<'a> {
         faults: &mut Faults,
     ) -> Option<Self> {
         let mut entries = Vec::new();
+        let mut before = None;
         for (key, value) in mapping(node, what, faults)? {
+            let cut = before.replace(value).filter(|before| is_rest(before, value));
             let Content::Scalar(scalar) = &key.content else { continue };
             if known.contains(&scalar.text.as_str()) {
                 entries.push((scalar.text.as_str(), value));
             } else {
-                let fault = unknown_key(key, scalar, value, what, known, faults);
+                let fault =
+                    cut.map_or_else(|| unknown_key(key, scalar, value, what, known, faults), cut_fault);
                 faults.add(fault);
             }
         }
@@ -75,10 +80,8 @@ fn unknown_key(
 ) -> Fault {
     let name = scalar.text.as_str();
     let fault = Fault::error("unknown-key", key.at, format!("{what} has no key `{}`", clip(name)));
-    let empty = matches!(&value.content, Content::Scalar(value) if value.sort == Sort::Null);
-    if scalar.in_flow && empty {
-        // `{start: max(a, b)}` is cut at the comma, and leaves a key `b)`.
-        return fault.help("inside brackets a comma ends a text: put a text that contains one in quotes");
+    if scalar.in_flow && is_nothing(value) {
+        return fault.help(COMMA);
     }
     let near = near_help(name, known.iter().copied(), faults);
     fault.help(near.unwrap_or_else(|| format!("the keys are {}", list(known))))
@@ -109,8 +112,13 @@ pub(super) fn named<'a>(
     faults: &mut Faults,
 ) -> Vec<(Text, &'a Node)> {
     let Some(map) = node.and_then(|node| mapping(node, what, faults)) else { return Vec::new() };
+    let mut before = None;
     map.iter()
         .filter_map(|(key, value)| {
+            if let Some(cut) = before.replace(value).filter(|before| is_rest(before, value)) {
+                faults.add(cut_fault(cut));
+                return None;
+            }
             let name = text(key, "a name", faults)?;
             check(&name, faults).then_some((name, value))
         })
@@ -171,20 +179,49 @@ pub(super) fn expression(node: &Node, what: &str, faults: &mut Faults) -> Option
                 ),
         );
     }
-    let opened = text.value.matches('(').count();
-    let closed = text.value.matches(')').count();
-    if scalar.plain && scalar.in_flow && opened != closed {
-        faults.add(
-            Fault::error(
-                "cut-expression",
-                node.at,
-                format!("{what} is cut at a comma: `{}`", clip(&text.value)),
-            )
-            .help("inside brackets a comma ends a text: put a text that contains one in quotes"),
-        );
+    if is_cut(node) {
+        faults.add(cut_fault(node));
         return None;
     }
     Some(text)
+}
+
+/// Whether a text without quotes inside brackets ends at a comma in the middle of its parentheses.
+fn is_cut(node: &Node) -> bool {
+    let Content::Scalar(scalar) = &node.content else { return false };
+    let count = |sign: char| scalar.text.matches(sign).count();
+    scalar.plain && scalar.in_flow && count('(') > count(')')
+}
+
+/// Whether an entry is what a comma cut from the one before: `{start: max(a, b)}` leaves a key `b)` without a
+/// value.
+fn is_rest(before: &Node, value: &Node) -> bool {
+    is_cut(before) && is_nothing(value)
+}
+
+fn is_nothing(node: &Node) -> bool {
+    matches!(&node.content, Content::Scalar(scalar) if scalar.plain && scalar.sort == Sort::Null)
+}
+
+fn cut_fault(node: &Node) -> Fault {
+    let text = match &node.content {
+        Content::Scalar(scalar) => clip(&scalar.text),
+        Content::List(_) | Content::Map(_) => String::new(),
+    };
+    Fault::error("cut-expression", node.at, format!("the text `{text}` is cut at a comma")).help(COMMA)
+}
+
+/// Reads each item of a list; `None` where one of them is wrong. All are read, for all their faults, but those
+/// behind one that is cut at a comma: they are its other part.
+pub(super) fn each<T>(items: &[Node], mut read: impl FnMut(&Node) -> Option<T>) -> Option<Vec<T>> {
+    let mut out = Vec::with_capacity(items.len());
+    for item in items {
+        out.push(read(item));
+        if is_cut(item) {
+            break;
+        }
+    }
+    out.into_iter().collect()
 }
 
 /// A value.

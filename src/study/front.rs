@@ -1,9 +1,8 @@
 //! The front matter: the YAML between two lines `---` at the top of a study.
 
 use super::node::{self, Content, Excerpt};
-use super::slip::clip;
 use super::{FrontMatter, fields};
-use crate::fault::{Fault, Faults, FileId, Span};
+use crate::fault::{Fault, Faults, FileId, Span, clip};
 
 /// The keys beside `study`, in the order of a title block.
 const KEYS: [&str; 9] =

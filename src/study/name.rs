@@ -1,8 +1,7 @@
 //! Names: of blocks, quantities and criteria, of the symbols of a model, and `RUN.QUANTITY`.
 
 use super::Text;
-use super::slip::clip;
-use crate::fault::{Fault, Faults, nearest};
+use crate::fault::{Fault, Faults, clip, nearest};
 
 /// The functions of expressions: no symbol may have their names.
 pub(super) const FUNCTIONS: [&str; 25] = [

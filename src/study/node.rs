@@ -10,7 +10,7 @@ use serde::de::{Deserialize, Deserializer, MapAccess, SeqAccess, Visitor};
 
 use super::slip;
 use super::yaml::{self, Event, What};
-use crate::fault::{Fault, Faults, FileId, Span};
+use crate::fault::{Fault, Faults, FileId, Span, clip};
 
 /// A YAML text that was put together from parts of a file: a fence in a list loses its indent, and a line
 /// end of two bytes one of them.
@@ -212,11 +212,12 @@ impl Builder<'_> {
         };
         let exact = same && self.excerpt.is_whole(from, to);
         let (from, to) = if exact { (from, to) } else { (start, self.excerpt.first_line(start, end)) };
-        let rest = &source[end..self.excerpt.first_line(end, source.len())];
-        let comment = rest.trim_start();
-        let comment_at = end + rest.len() - comment.len();
-        let cuts = comment.starts_with('#') && comment.len() < rest.len();
-        let comment = cuts.then(|| self.excerpt.span(comment_at, comment_at + comment.trim_end().len()));
+        let blanks = source[end..].bytes().take_while(|byte| matches!(byte, b' ' | b'\t')).count();
+        let comment_at = end + blanks;
+        let comment = (blanks > 0 && source[comment_at..].starts_with('#')).then(|| {
+            let comment = &source[comment_at..self.excerpt.first_line(comment_at, source.len())];
+            self.excerpt.span(comment_at, comment_at + comment.trim_end().len())
+        });
         let scalar = Scalar { text, exact, plain, in_flow, comment, sort: Sort::default() };
         Node { at: self.excerpt.span(from, to), content: Content::Scalar(scalar) }
     }
@@ -239,7 +240,7 @@ impl Builder<'_> {
                 );
             }
             if let Some(first) = seen.insert(&scalar.text, key.at) {
-                let message = format!("the key `{}` stands twice", slip::clip(&scalar.text));
+                let message = format!("the key `{}` stands twice", clip(&scalar.text));
                 self.faults.add(
                     Fault::error("duplicate-key", key.at, message)
                         .label("again here")

@@ -12,9 +12,8 @@ use super::block::{self, Blocks, chart, criteria, model, run, table};
 use super::fence::{self, Fence, Kind};
 use super::node::{self, Excerpt};
 use super::quote::TextRun;
-use super::slip::clip;
 use super::{BlockRef, Part, Text, link};
-use crate::fault::{Fault, Faults, FileId, Span};
+use crate::fault::{Fault, Faults, FileId, Span, clip};
 
 /// The deepest nesting of lists, quotes and emphasis.
 const DEEPEST: usize = 100;
@@ -218,10 +217,10 @@ impl<'a> Reader<'a, '_> {
                 meaning = fence::classify(&info, self.faults);
                 let block = self.source.get(code.range.clone()).unwrap_or_default();
                 if meaning != Fence::Code && !fence::is_closed(block, fence) {
-                    self.faults.add(
-                        Fault::error("open-fence", info.at, "the block does not end")
-                            .help(format!("end it with a line `{fence}`, indented like its first line")),
-                    );
+                    self.faults
+                        .add(Fault::error("open-fence", info.at, "the block does not end").help(format!(
+                            "end it with a line {fence} that is indented like its first line"
+                        )));
                     if let Fence::Block { kind, name: Some(name), .. } = meaning {
                         self.body.broken.insert((kind, name.value));
                     }
@@ -240,7 +239,7 @@ impl<'a> Reader<'a, '_> {
                 }
                 self.push(Event::End(TagEnd::CodeBlock));
             }
-            Fence::Refused => {}
+            Fence::Refused { likely } => self.body.broken.extend(likely),
         }
     }
 

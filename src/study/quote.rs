@@ -6,9 +6,8 @@
 use pulldown_cmark::{CowStr, Event};
 
 use super::name::check_quantity;
-use super::slip::clip;
 use super::{Part, Quote, Text};
-use crate::fault::{Fault, Faults, FileId, Span};
+use crate::fault::{Fault, Faults, FileId, Span, clip};
 
 /// A run of text: pieces that follow each other without other events between them.
 #[derive(Default)]

@@ -102,7 +102,7 @@ mod tests {
             assert_eq!(sources.text(text.at), text.value);
         }
         let run = &study.blocks.runs[0];
-        assert!(matches!(&run.control, Control::Step(step) if step.number == 0.5));
+        assert!(matches!(&run.control, Control::Step(step) if step.digits == "0.5"));
         assert_eq!((run.bound, run.quantities.len()), (BoundAsked::Halving, 5));
         for entry in &run.quantities {
             assert_eq!(sources.text(entry.text.at), entry.text.value);

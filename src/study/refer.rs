@@ -12,9 +12,8 @@ use super::block::table::Lists;
 use super::fence::Kind;
 use super::name::{near_help, run_and_rest};
 use super::prose::Body;
-use super::slip::clip;
 use super::{Part, Text};
-use crate::fault::{Fault, Faults};
+use crate::fault::{Fault, Faults, clip};
 
 /// Checks all references of a body.
 pub(super) fn check(body: &Body, faults: &mut Faults) {

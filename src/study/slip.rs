@@ -92,12 +92,6 @@ fn after_quotes(text: &str, byte: usize) -> bool {
     text[..byte].trim_end().ends_with(['"', '\''])
 }
 
-/// A text short enough for a message, on one line.
-pub(super) fn clip(text: &str) -> String {
-    let line: String = text.chars().take(60).map(|c| if c.is_control() { ' ' } else { c }).collect();
-    if line.len() < text.len() { format!("{line}...") } else { line }
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;

@@ -10,7 +10,7 @@
 use std::ops::Range;
 
 use super::Value;
-use crate::fault::{Fault, Faults, Span};
+use crate::fault::{Fault, Faults, Span, clip};
 
 /// Where the number and the unit of a value stand in its text, in bytes.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -207,14 +207,6 @@ fn refusal(text: &str, place: &impl Fn(Range<usize>) -> Span) -> Fault {
         .help("write `NUMBER` or `NUMBER UNIT`: `3200 m`, `0.35 s^2/m`, `1e-6`")
 }
 
-/// A text short enough for a message.
-fn clip(text: &str) -> String {
-    match text.char_indices().nth(40) {
-        Some((i, _)) => format!("{}...", &text[..i]),
-        None => text.to_string(),
-    }
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -224,19 +216,16 @@ mod tests {
     fn check(input: &str, expect: &str) {
         let mut faults = Faults::new();
         let at = Span::new(FileId(0), 100, 100 + input.len());
-        let got = match read_value(input, at, true, &mut faults) {
-            Some(value) => {
-                assert!(faults.is_empty() && is_value(input));
-                let text = &input[value.at.start - 100..value.at.end - 100];
-                assert!(text.starts_with(&value.digits), "{text}");
-                format!("{:?}|{}", value.number, value.unit.unwrap_or_default())
-            }
-            None => {
-                let list = faults.sorted();
-                assert_eq!(list.len(), 1, "{input}");
-                assert!(list[0].help.is_some());
-                format!("{}@{}..{}", list[0].code, list[0].at.start - 100, list[0].at.end - 100)
-            }
+        let got = if let Some(value) = read_value(input, at, true, &mut faults) {
+            assert!(faults.is_empty() && is_value(input));
+            let text = &input[value.at.start - 100..value.at.end - 100];
+            assert!(text.starts_with(&value.digits), "{text}");
+            format!("{:?}|{}", value.number, value.unit.unwrap_or_default())
+        } else {
+            let list = faults.sorted();
+            assert_eq!(list.len(), 1, "{input}");
+            assert!(list[0].help.is_some());
+            format!("{}@{}..{}", list[0].code, list[0].at.start - 100, list[0].at.end - 100)
         };
         assert_eq!(got, expect, "{input}");
     }

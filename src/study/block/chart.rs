@@ -1,11 +1,10 @@
 //! The block `chart NAME`.
 
-use crate::fault::{Fault, Faults, Span};
+use crate::fault::{Fault, Faults, Span, clip};
 use crate::study::Text;
-use crate::study::fields::{Fields, expression, items, text};
+use crate::study::fields::{Fields, each, expression, items, text};
 use crate::study::name::{check_quantity, is_name, run_and_rest};
 use crate::study::node::{Content, Node};
-use crate::study::slip::clip;
 
 /// A chart as written.
 #[derive(Clone, Debug, PartialEq)]
@@ -106,17 +105,13 @@ fn shows(fields: &Fields<'_>, at: Span, faults: &mut Faults) -> Option<Shows> {
 
 /// A list of `RUN.QUANTITY`; `None` with faults where one of them is not.
 pub(in crate::study) fn quantities(node: &Node, what: &str, faults: &mut Faults) -> Option<Vec<Text>> {
-    let read: Vec<Option<Text>> = items(node, what, faults)?
-        .iter()
-        .map(|item| text(item, "a quantity", faults).filter(|text| check_quantity(text, faults)))
-        .collect();
-    read.into_iter().collect()
+    let list = items(node, what, faults)?;
+    each(list, |item| expression(item, "a quantity", faults).filter(|text| check_quantity(text, faults)))
 }
 
 fn traces(node: &Node, what: &str, faults: &mut Faults) -> Option<Vec<Trace>> {
-    let read: Vec<Option<Trace>> =
-        items(node, what, faults)?.iter().map(|item| trace(item, faults)).collect();
-    read.into_iter().collect()
+    let list = items(node, what, faults)?;
+    each(list, |item| trace(item, faults))
 }
 
 fn trace(node: &Node, faults: &mut Faults) -> Option<Trace> {

@@ -1,11 +1,10 @@
 //! The block `criteria`.
 
-use crate::fault::{Fault, Faults, Span, nearest};
+use crate::fault::{Fault, Faults, Span, clip, nearest};
 use crate::study::Text;
 use crate::study::fields::{Fields, expression, items, text};
 use crate::study::name::{check_name, check_quantity};
 use crate::study::node::{Content, Node};
-use crate::study::slip::clip;
 use crate::unit::{Value, is_value, read_value};
 
 /// A list of acceptance criteria.

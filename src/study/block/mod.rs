@@ -7,6 +7,9 @@ pub mod quantity;
 pub mod run;
 pub mod table;
 
+#[cfg(test)]
+mod tests;
+
 /// The blocks of a study by kind, each list in the order of the file.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Blocks {

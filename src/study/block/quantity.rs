@@ -11,9 +11,8 @@
 //! parameters; TIME a value. Words are parted by blanks.
 
 use super::run::{Direction, Level, Occurrence, Passage, Reading};
-use crate::fault::{Fault, Faults, nearest};
+use crate::fault::{Fault, Faults, clip, nearest};
 use crate::study::Text;
-use crate::study::slip::clip;
 use crate::unit::{is_value, read_value};
 
 /// What to write, for the help of a fault.

@@ -3,7 +3,7 @@
 use super::chart::quantities;
 use crate::fault::{Fault, Faults, Span};
 use crate::study::Text;
-use crate::study::fields::{Fields, expression, items, text};
+use crate::study::fields::{Fields, each, expression, items, text};
 use crate::study::node::Node;
 
 /// A table as written.
@@ -62,11 +62,8 @@ fn lists(fields: &Fields<'_>, at: Span, faults: &mut Faults) -> Option<Lists> {
         (None, Some(run)) => {
             let run = text(run, "`run`", faults);
             let columns = columns.map_or(Some(Vec::new()), |node| {
-                let read: Vec<Option<Text>> = items(node, "`columns`", faults)?
-                    .iter()
-                    .map(|item| expression(item, "a column", faults))
-                    .collect();
-                read.into_iter().collect()
+                let list = items(node, "`columns`", faults)?;
+                each(list, |item| expression(item, "a column", faults))
             });
             Some(Lists::Rows { run: run?, columns: columns? })
         }
