@@ -5,8 +5,15 @@
 
 pub mod axis;
 pub mod chart;
+mod clip;
 pub mod convergence;
 pub mod digits;
+mod exact;
+mod frame;
+mod labels;
 pub mod stability;
 mod surface;
+pub mod table;
+pub mod thin;
+mod ticks;
 mod width;
