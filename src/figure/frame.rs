@@ -3,7 +3,7 @@
 use super::axis::{Axis, with_exponent};
 use super::clip::{Corners, Point};
 use super::surface::{Anchor, Ink, Surface};
-use super::width::{fit, text_width};
+use super::width::{fit_title, text_width};
 use crate::arithmetic::larger;
 
 /// Font size of tick labels.
@@ -76,12 +76,12 @@ impl Frame {
             surface.line(&[(self.left - 6.0, y), (self.left, y)], Ink::Strong, 1.2);
             surface.text(text, (self.left - 9.0, y), Ink::Strong, SMALL, Anchor::Left);
         }
-        let (title, size) = fit(&with_exponent(x_title, self.x.exponent), self.right - 10.0, PLAIN);
+        let (title, size) = fit_title(&with_exponent(x_title, self.x.exponent), self.right - 10.0, PLAIN);
         // Centred below the axis, unless it is too long for that.
         let half = 0.5 * text_width(&title, size);
         let x = larger(0.5 * (self.left + self.right), half + 4.0);
         surface.text(&title, (x, self.bottom + 29.0), Ink::Strong, size, Anchor::Below);
-        let (title, size) = fit(&with_exponent(y_title, self.y.exponent), self.bottom - 4.0, PLAIN);
+        let (title, size) = fit_title(&with_exponent(y_title, self.y.exponent), self.bottom - 4.0, PLAIN);
         let half = 0.5 * text_width(&title, size);
         let y = larger(0.5 * (self.top + self.bottom), half + 4.0);
         surface.text(&title, (12.0, y), Ink::Strong, size, Anchor::Upward);

@@ -106,7 +106,7 @@ fn flow(texts: &[&str], width: f64) -> Vec<(f64, f64, f64)> {
                 (x, row) = (12.0, row + 1.0);
             }
             let place = (x, row, room);
-            x += wide + 18.0;
+            x += wide + 22.0;
             place
         })
         .collect()

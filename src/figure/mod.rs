@@ -11,6 +11,8 @@ pub mod digits;
 mod exact;
 mod frame;
 mod labels;
+#[cfg(test)]
+mod samples;
 pub mod stability;
 mod surface;
 pub mod table;

@@ -2,12 +2,14 @@
 
 use super::axis::Axis;
 use super::clip::{Point, clip, clip_area, inside};
-use super::frame::{BELOW, Frame, SMALL, TOP};
+use super::frame::{BELOW, Frame, PLAIN, SMALL, TOP};
 use super::surface::{Anchor, Ink, Surface};
 use crate::arithmetic::{larger, smaller};
 
 /// Width and height of the picture.
-const SIZE: (f64, f64) = (520.0, 420.0);
+const SIZE: (f64, f64) = (520.0, 440.0);
+/// Height of the row of labels at the bottom.
+const ROW: f64 = 22.0;
 /// Points farther out than this many times the extent of the region are left out and counted.
 const FAR: f64 = 2.5;
 
@@ -63,6 +65,15 @@ pub fn draw(
             surface.marker(1, point, 2.6);
         }
     }
+    let y = SIZE.1 - 0.5 * ROW;
+    let sample = [(66.0, y - 6.0), (88.0, y - 6.0), (88.0, y + 6.0), (66.0, y + 6.0), (66.0, y - 6.0)];
+    surface.fill(&sample, Ink::Series(0), 0.14);
+    surface.line(&sample, Ink::Series(0), 1.6);
+    surface.text("the scheme damps, |R(hλ)| ≤ 1", (94.0, y), Ink::Strong, PLAIN, Anchor::Right);
+    if !points.is_empty() {
+        surface.marker(1, (330.0, y), 2.6);
+        surface.text("hλ along the run", (341.0, y), Ink::Strong, PLAIN, Anchor::Right);
+    }
     let outside = points.len() - near.len();
     if outside > 0 {
         let text = match outside {
@@ -76,7 +87,7 @@ pub fn draw(
 
 /// A frame in which both axes have the same scale.
 fn square_frame(low: Complex, high: Complex) -> Frame {
-    let (left, right, top, bottom) = (66.0, SIZE.0 - 16.0, TOP, SIZE.1 - BELOW);
+    let (left, right, top, bottom) = (66.0, SIZE.0 - 16.0, TOP, SIZE.1 - ROW - BELOW);
     let room = 0.08 * larger(high.0 - low.0, high.1 - low.1);
     let (low, high) = ((low.0 - room, low.1 - room), (high.0 + room, high.1 + room));
     let unit = larger((high.0 - low.0) / (right - left), (high.1 - low.1) / (bottom - top));
@@ -108,8 +119,8 @@ mod tests {
         let (svg, outside) = draw("s", "t", "d", &[disc()], &points);
         assert_eq!(outside, 2);
         assert!(svg.contains("2 points lie beyond"));
-        // The region and one marker.
-        assert_eq!(svg.matches("<polygon").count(), 2);
+        // The region and one marker, and the same in the row of labels.
+        assert_eq!(svg.matches("<polygon").count(), 4);
         assert!(draw("s", "t", "d", &[disc()], &points[..2]).0.contains("1 point lies beyond"));
     }
 

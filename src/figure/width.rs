@@ -2,10 +2,10 @@
 
 /// Width of a text at a font size, in the same unit.
 ///
-/// The advances are those of Helvetica (Adobe font metrics, from memory), and an eighth more, as the reader's font may
-/// be a wider one.
+/// The advances are those of Helvetica (Adobe font metrics, from memory), and more by 18 %, as
+/// the reader's font may be a wider one.
 pub(super) fn text_width(text: &str, size: f64) -> f64 {
-    text.chars().map(advance).sum::<f64>() * size * 1.125 / 1000.0
+    text.chars().map(advance).sum::<f64>() * size * 1.18 / 1000.0
 }
 
 /// A text and a font size with which it fits into `room`: smaller where it must be, and cut short where that is not
@@ -19,15 +19,34 @@ pub(super) fn fit(text: &str, room: f64, size: f64) -> (String, f64) {
     if width * 0.8 <= room {
         return (text.to_owned(), size * room / width);
     }
+    (cut(text, room, least), least)
+}
+
+/// As much of a text as fits into `room`, with an ellipsis.
+fn cut(text: &str, room: f64, size: f64) -> String {
     let mut short = String::new();
     for c in text.chars() {
         short.push(c);
-        if text_width(&short, least) > room - least {
+        if text_width(&short, size) > room - size {
             short.pop();
             break;
         }
     }
-    (format!("{}\u{2026}", short.trim_end()), least)
+    format!("{}\u{2026}", short.trim_end())
+}
+
+/// The same for the title of an axis, whose symbol and unit are kept whatever is cut: `Level in the … z / m`.
+pub(super) fn fit_title(title: &str, room: f64, size: f64) -> (String, f64) {
+    let (text, fitted) = fit(title, room, size);
+    let Some((quantity, unit)) = title.rsplit_once(" / ").filter(|_| text != title) else {
+        return (text, fitted);
+    };
+    let (about, symbol) = quantity.rsplit_once(' ').unwrap_or(("", quantity));
+    let tail = format!(" {symbol} / {unit}");
+    let about = cut(about, room - text_width(&tail, fitted), fitted);
+    let short = format!("{about}{tail}");
+    // A symbol and a unit that fill the room by themselves are cut like any text.
+    if text_width(&short, fitted) > room { (text, fitted) } else { (short, fitted) }
 }
 
 /// Advance in thousandths of the font size.
@@ -59,6 +78,9 @@ mod tests {
         assert!(text.ends_with("z / m") && size < 13.0 && text_width(&text, size) < 130.001);
         let (text, size) = fit(&"wide ".repeat(40), 130.0, 13.0);
         assert!(text.ends_with('\u{2026}') && text_width(&text, size) < 131.0, "{text}");
+        let (title, size) = fit_title(&format!("{}x / m", "wide ".repeat(40)), 200.0, 13.0);
+        assert!(title.ends_with("\u{2026} x / m") && text_width(&title, size) <= 200.0, "{title}");
+        assert_eq!(fit_title("z / m", 100.0, 13.0).0, "z / m");
         assert!(fit("wide", 1.0, 13.0).0.ends_with('\u{2026}'));
     }
 }

@@ -95,13 +95,15 @@ pub fn draw_with(chart: &Chart, extras: &Extras) -> String {
     } else {
         Vec::new()
     };
-    let bottom = HEIGHT - BELOW;
-    let (place, right_room, below) = labels::lay_out(&texts, WIDTH, bottom - TOP);
+    // Limits far above are named over the data area.
+    let far_above = limits.iter().any(|(_, side)| *side == Side::Above);
+    let (top, bottom) = (TOP + if far_above { 14.0 } else { 0.0 }, HEIGHT - BELOW);
+    let (place, right_room, below) = labels::lay_out(&texts, WIDTH, bottom - top);
     let (left, right) = (left_room(&y), WIDTH - right_room);
     let tight = chart.over_time || extras.x_range.is_some();
     let most = most_labels(low.0, high.0, tight, right - left);
     let x = Axis::linear(low.0, high.0, most, tight);
-    let frame = Frame { left, right, top: TOP, bottom, x, y };
+    let frame = Frame { left, right, top, bottom, x, y };
     let corners = frame.corners();
 
     let mut surface = Surface::new(WIDTH, HEIGHT + below);
@@ -322,7 +324,7 @@ fn note_far_limits(surface: &mut Surface, frame: &Frame, limits: &[(&(f64, Strin
         let note = format!("{} lies {word} this frame", names.join(", "));
         let note = if names.len() > 1 { note.replace(" lies ", " lie ") } else { note };
         let (text, size) = fit(&note, frame.right - frame.left - 12.0, SMALL);
-        let y = if side == Side::Above { frame.top + 9.0 } else { frame.bottom - 10.0 };
+        let y = if side == Side::Above { frame.top - 10.0 } else { frame.bottom - 10.0 };
         surface.text(&text, (frame.right - 6.0, y), Ink::LimitText, size, Anchor::Left);
     }
 }
