@@ -149,7 +149,7 @@ fn pages() -> Vec<String> {
 fn samples_are_drawn_for_a_look() {
     let pages = pages();
     assert!(pages.iter().all(|svg| svg.len() > 3000 && svg.len() < 120_000));
-    let figures: String = pages.iter().map(|svg| format!("<figure>{svg}</figure>\n")).collect();
+    let figures = format!("<figure>{}</figure>", pages.join("</figure>\n<figure>"));
     let page = format!(
         "<!doctype html><html lang=\"en\"><meta charset=\"utf-8\"><title>Samples</title>\n<style>body{{margin:0;background:#fff}}figure{{margin:10px;width:760px;float:left}}</style>\n{figures}</html>\n"
     );
