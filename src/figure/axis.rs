@@ -76,12 +76,12 @@ impl Axis {
         }
         if major.len() < 2 {
             // Less than a decade: label some of the ticks between.
+            major.clear();
             for n in first - 1..=last {
                 for m in [1, 2, 5] {
                     let place = f64::from(n) + log10(f64::from(m));
                     if place >= low_end && place <= high_end && !major.iter().any(|(at, _)| *at == place) {
-                        let text = if m == 1 { power_text(n) } else { format!("{m}\u{b7}{}", power_text(n)) };
-                        major.push((place, text));
+                        major.push((place, multiple_text(m, n)));
                     }
                 }
             }
@@ -107,6 +107,16 @@ fn power_text(n: i32) -> String {
         0 => "1".to_owned(),
         1 => "10".to_owned(),
         n => format!("10{}", superscript(n)),
+    }
+}
+
+/// `m` times a power of ten, as a plain number where that is short.
+fn multiple_text(m: i32, n: i32) -> String {
+    match (m, n) {
+        (_, 0..=3) => format!("{}", f64::from(m) * power_of_ten(n)),
+        (_, -3..=-1) => format!("{:.*}", usize::try_from(-n).unwrap_or(0), f64::from(m) * power_of_ten(n)),
+        (1, _) => power_text(n),
+        _ => format!("{m}\u{b7}{}", power_text(n)),
     }
 }
 

@@ -37,7 +37,7 @@ impl Shown {
 
 /// Most significant digits of a value: a bound at rounding level would show many more than anyone reads. The record
 /// has them all.
-const MOST_DIGITS: i32 = 10;
+pub const MOST_DIGITS: i32 = 10;
 /// Places before the decimal mark above which a common power of ten is written.
 const MOST_WHOLE: i32 = 7;
 /// Places behind the decimal mark beyond which a common power of ten is written.

@@ -65,7 +65,8 @@ fn curves(
     let mut series = Vec::new();
     let mut notes: Vec<String> = Vec::new();
     let mut first: Option<(&RunOutcome, &Curve)> = None;
-    let several_runs = lines.iter().chain(points).any(|trace| trace.run.value != lines.first().map_or("", |l| &l.run.value));
+    let several_runs =
+        lines.iter().chain(points).any(|trace| trace.run.value != lines.first().map_or("", |l| &l.run.value));
     let label = |trace: &Trace| {
         trace.label.as_ref().map_or_else(
             || {
@@ -107,7 +108,8 @@ fn curves(
         });
     }
     let same: Vec<&str> = lines.iter().chain(points).map(|trace| trace.expression.value.as_str()).collect();
-    let y_name = if same.windows(2).all(|pair| pair[0] == pair[1]) { same.first().copied().unwrap_or("") } else { "" };
+    let y_name =
+        if same.windows(2).all(|pair| pair[0] == pair[1]) { same.first().copied().unwrap_or("") } else { "" };
     let about = first.and_then(|(run, _)| {
         let model = &study.blocks.models[run.model];
         let state = model.states.iter().find(|entry| entry.name.value == y_name)?;
@@ -188,7 +190,11 @@ fn curve_note(label: &str, curve: &Curve) -> String {
     let unit = curve.unit.as_ref().map_or_else(String::new, |unit| format!(" {unit}"));
     match (curve.bound, curve.grade) {
         (Some(bound), grade) if grade != Grade::Unbounded => {
-            format!("{label}: estimated bound along the curve {}{unit} ({})", digits::size(bound), grade.word())
+            format!(
+                "{label}: estimated bound along the curve {}{unit} ({})",
+                digits::size(bound),
+                grade.word()
+            )
         }
         _ => format!("{label}: no bound along the whole curve"),
     }
@@ -230,12 +236,16 @@ fn convergence_chart(id: &str, title: &str, list: &[(&RunOutcome, &Quantity, Str
     }
     let unit = list.first().and_then(|(run, ..)| run.time_unit.clone());
     let x_title = axis_title("Largest step", "h", unit.as_deref());
-    let description = "Relative distance from the extrapolated limit on three meshes, against the largest step";
+    let description =
+        "Relative distance from the extrapolated limit on three meshes, against the largest step";
     let svg = convergence::draw(id, title, description, &x_title, &errors)?;
     let note = if hidden.is_empty() {
         String::new()
     } else {
-        format!("without a slope to draw (differences at rounding level or not monotone): {}", hidden.join(", "))
+        format!(
+            "without a slope to draw (differences at rounding level or not monotone): {}",
+            hidden.join(", ")
+        )
     };
     Some(Drawing { svg, note })
 }
@@ -250,14 +260,18 @@ fn stability_chart(id: &str, title: &str, run: &RunOutcome) -> Drawing {
     let exact = &run.scheme.tableau.exact;
     let region = Stability::of_weights(exact, &exact.b);
     let points: Vec<(f64, f64)> = run.spectrum.iter().map(|point| (point.re, point.im)).collect();
-    let description =
-        "The region where the scheme damps a linear problem, with step times eigenvalue of the Jacobian along the run";
+    let description = "The region where the scheme damps a linear problem, with step times eigenvalue of the Jacobian along the run";
     let (svg, outside) = stability::draw(id, title, description, &region.boundary(OUTLINE), &points);
-    let unstable = points.iter().filter(|(re, im)| *re < 0.0 && region.amplification((*re, *im)) > 1.0 + 1e-9).count();
+    let unstable =
+        points.iter().filter(|(re, im)| *re < 0.0 && region.amplification((*re, *im)) > 1.0 + 1e-9).count();
     let mut note = match (points.len(), unstable) {
         (0, _) => "the model has too many states for its eigenvalues to be shown".to_owned(),
-        (all, 0) => format!("all {all} damped eigenvalues sampled along the run lie in the region or decay is not asked of them"),
-        (all, n) => format!("{n} of {all} sampled eigenvalues with a negative real part lie outside the region: there the scheme does not damp what the model damps"),
+        (all, 0) => format!(
+            "all {all} damped eigenvalues sampled along the run lie in the region or decay is not asked of them"
+        ),
+        (all, n) => format!(
+            "{n} of {all} sampled eigenvalues with a negative real part lie outside the region: there the scheme does not damp what the model damps"
+        ),
     };
     if outside > 0 {
         note = format!("{note}; {outside} lie beyond the frame");
