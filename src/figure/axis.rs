@@ -124,7 +124,7 @@ fn multiple_text(m: i32, n: i32) -> String {
 fn widen(low: f64, high: f64, tight: bool) -> (f64, f64) {
     let span = high - low;
     let size = crate::arithmetic::larger(low.abs(), high.abs());
-    if !(span > 1e-12 * size) {
+    if span.is_nan() || span <= 1e-12 * size {
         let room = if size > 0.0 { 0.1 * size } else { 1.0 };
         return (low - room, high + room);
     }
@@ -151,7 +151,7 @@ fn leading(step: f64) -> u32 {
 /// A power of ten to take out of all labels, where they would be very long.
 fn common_exponent(low: f64, high: f64) -> Option<i32> {
     let lead = decade(crate::arithmetic::larger(low.abs(), high.abs()));
-    if !(-3..=5).contains(&lead) { Some(lead) } else { None }
+    (!(-3..=5).contains(&lead)).then_some(lead)
 }
 
 #[cfg(test)]

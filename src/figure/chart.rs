@@ -140,7 +140,7 @@ pub fn draw(chart: &Chart) -> String {
         low = (smaller(low.0, *x), smaller(low.1, *y));
         high = (larger(high.0, *x), larger(high.1, *y));
     }
-    if !(low.0 <= high.0) {
+    if low.0 > high.0 {
         (low, high) = ((0.0, 0.0), (1.0, 1.0));
     }
     // A limit is drawn where it is near enough not to squeeze the lines.

@@ -233,8 +233,9 @@ mod tests {
             (state >> 11) as f64 / (1_u64 << 53) as f64
         };
         for _ in 0..20_000 {
-            let value = (next() - 0.5) * power_of_ten((next() * 40.0 - 20.0) as i32);
-            let bound = next() * power_of_ten((next() * 40.0 - 20.0) as i32);
+            // Both from 1e-20 to 1e20.
+            let mut size = || elementary::pow(10.0, next() * 40.0 - 20.0);
+            let (value, bound) = (size() - size(), size());
             if bound == 0.0 {
                 continue;
             }

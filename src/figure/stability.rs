@@ -89,11 +89,12 @@ fn square_frame(low: Complex, high: Complex) -> Frame {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::arithmetic::elementary::{cos, sin};
 
     #[test]
     fn points_far_out_are_counted_not_drawn_at_the_edge() {
         let circle: Vec<Complex> =
-            (0..=64).map(|k| f64::from(k) * 0.0981747704).map(|a| (a.cos() - 1.0, a.sin())).collect();
+            (0..=64).map(|k| f64::from(k) * 0.0981747704).map(|a| (cos(a) - 1.0, sin(a))).collect();
         let (svg, outside) = draw("s", "t", "d", &[circle], &[(-0.5, 0.0), (-1000.0, 3.0)]);
         assert_eq!(outside, 1);
         assert!(svg.contains("1 points lie beyond"));

@@ -6,7 +6,7 @@
 
 use plotters::backend::SVGBackend;
 use plotters::drawing::{DrawingArea, IntoDrawingArea};
-use plotters::element::{PathElement, Polygon, Rectangle, Text};
+use plotters::element::{PathElement, Polygon, Text};
 use plotters::style::text_anchor::{HPos, Pos, VPos};
 use plotters::style::{Color, FontTransform, IntoFont, RGBColor, ShapeStyle, TextStyle};
 
@@ -89,8 +89,6 @@ pub(super) enum Anchor {
     Left,
     /// Below it, centred.
     Below,
-    /// Above it, centred.
-    Above,
     /// Turned by a quarter, reading upward, centred.
     Upward,
 }
@@ -105,7 +103,6 @@ pub(super) struct Surface {
 enum Mark {
     Line(Vec<(f64, f64)>, Ink, f64),
     Fill(Vec<(f64, f64)>, Ink, f64),
-    Box((f64, f64), (f64, f64), Ink),
     Text(String, (f64, f64), Ink, f64, Anchor),
 }
 
@@ -122,9 +119,6 @@ impl Surface {
         if points.len() > 2 {
             self.marks.push(Mark::Fill(points.to_vec(), ink, opacity));
         }
-    }
-    pub(super) fn frame(&mut self, a: (f64, f64), b: (f64, f64), ink: Ink) {
-        self.marks.push(Mark::Box(a, b, ink));
     }
     pub(super) fn text(&mut self, text: &str, at: (f64, f64), ink: Ink, size: f64, anchor: Anchor) {
         self.marks.push(Mark::Text(text.to_owned(), at, ink, size, anchor));
@@ -216,10 +210,6 @@ fn draw(root: &DrawingArea<SVGBackend<'_>, plotters::coord::Shift>, mark: &Mark)
             let style: ShapeStyle = ink.colour().mix(*opacity).filled();
             let _ = root.draw(&Polygon::new(points.iter().map(fine).collect::<Vec<_>>(), style));
         }
-        Mark::Box(a, b, ink) => {
-            let style = ink.colour().stroke_width(to_pixels(FINE));
-            let _ = root.draw(&Rectangle::new([fine(a), fine(b)], style));
-        }
         Mark::Text(text, at, ink, size, anchor) => {
             let mut font = ("sans-serif", size * FONT * FINE).into_font();
             if *anchor == Anchor::Upward {
@@ -229,7 +219,6 @@ fn draw(root: &DrawingArea<SVGBackend<'_>, plotters::coord::Shift>, mark: &Mark)
                 Anchor::Right => Pos::new(HPos::Left, VPos::Center),
                 Anchor::Left => Pos::new(HPos::Right, VPos::Center),
                 Anchor::Below => Pos::new(HPos::Center, VPos::Top),
-                Anchor::Above => Pos::new(HPos::Center, VPos::Bottom),
                 Anchor::Upward => Pos::new(HPos::Center, VPos::Center),
             };
             let colour = ink.colour();

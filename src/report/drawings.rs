@@ -15,7 +15,7 @@ const MOST_QUANTITIES: usize = 7;
 
 /// A drawn chart.
 #[derive(Clone, Debug, PartialEq, Eq)]
-pub struct Drawing {
+pub(super) struct Drawing {
     /// The SVG.
     pub svg: String,
     /// What the reader should know of the numbers in it: bounds of the curves, points left out.
@@ -23,7 +23,7 @@ pub struct Drawing {
 }
 
 /// Draws the charts of a study, in the order of its blocks. `None` where there is nothing to draw.
-pub fn charts(study: &Study, outcome: &Outcome) -> Vec<Option<Drawing>> {
+pub(super) fn charts(study: &Study, outcome: &Outcome) -> Vec<Option<Drawing>> {
     study.blocks.charts.iter().map(|block| draw(study, block, outcome)).collect()
 }
 
@@ -50,7 +50,7 @@ fn draw(study: &Study, block: &ChartBlock, outcome: &Outcome) -> Option<Drawing>
 }
 
 /// The title of a chart, or its name where it has none.
-pub fn title(block: &ChartBlock) -> String {
+pub(super) fn title(block: &ChartBlock) -> String {
     block.title.as_ref().map_or_else(|| block.name.value.clone(), |title| title.value.clone())
 }
 
@@ -99,7 +99,7 @@ fn curves(
         let x = if against == "t" { rows.times.clone() } else { column(against)?.values.clone() };
         if first.is_none() {
             x_unit = if against == "t" { run.time_unit.clone() } else { column(against)?.unit.clone() };
-            y_unit = y.unit.clone();
+            y_unit.clone_from(&y.unit);
         }
         series.push(Series {
             label: format!("{} (rows)", label(trace)),
@@ -201,7 +201,7 @@ fn curve_note(label: &str, curve: &Curve) -> String {
 }
 
 /// The convergence chart of a run's quantities.
-pub fn run_convergence(run: &RunOutcome) -> Option<Drawing> {
+pub(super) fn run_convergence(run: &RunOutcome) -> Option<Drawing> {
     let list: Vec<(&RunOutcome, &Quantity, String)> = run
         .quantities
         .iter()
@@ -251,7 +251,7 @@ fn convergence_chart(id: &str, title: &str, list: &[(&RunOutcome, &Quantity, Str
 }
 
 /// The stability chart of a run.
-pub fn run_stability(run: &RunOutcome) -> Drawing {
+pub(super) fn run_stability(run: &RunOutcome) -> Drawing {
     let title = format!("Stability region of {} and run {}", run.scheme.name, run.name);
     stability_chart(&format!("stability-{}", run.name), &title, run)
 }
