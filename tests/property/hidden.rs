@@ -167,3 +167,24 @@ fn an_aim_is_met_by_the_largest_step_of_two_digits() {
         );
     }
 }
+
+/// Forcing that all three meshes meet in the same phase: with four periods a step, every point of every mesh sees a
+/// crest. The exact integral over whole periods is zero.
+#[test]
+fn an_oscillation_in_step_with_the_meshes_is_seen() {
+    for scheme in all() {
+        for periods in [1, 2, 4, 8, 16, 32] {
+            for bound in ["halving", "halving and companion"] {
+                let model = format!("states: {{x: 1}}\nrates: {{x: \"cos(2*pi*{periods}*t/0.1)\"}}");
+                let text = study(&model, scheme.key, 0.1, 2.0)
+                    .replace("until: 2\n", &format!("until: 2\nbound: {bound}\n"));
+                let (_, outcome) = evaluate("alias.md", &text).unwrap();
+                let quantity = &outcome.runs[0].quantities[0];
+                let error = (quantity.value.unwrap() - 1.0).abs();
+                let held = quantity.bound.is_none_or(|bound| error <= bound);
+                let text = format!("{} {periods} {bound}: error {error:e} {quantity:?}", scheme.key);
+                assert!(held || quantity.grade >= Grade::Indicated, "{text}");
+            }
+        }
+    }
+}
