@@ -40,7 +40,7 @@ pub(super) struct Follower {
     pub watch: Watch,
     /// Samples the corrected solution.
     pub samplers: Vec<Sampler>,
-    /// Largest error of every state.
+    /// Largest error of every state at the ends of steps of the run.
     pub largest: Vec<f64>,
     /// Why the companion gave up, where it did.
     pub lost: Option<String>,
@@ -144,10 +144,10 @@ impl Observer for Follower {
                 sampler.see(&self.corrected, step.modes);
             }
             std::mem::swap(&mut self.e, &mut self.e_new);
-            for (largest, e) in self.largest.iter_mut().zip(&self.e) {
-                *largest = larger(*largest, e.abs());
-            }
             self.steps += 1;
+        }
+        for (largest, e) in self.largest.iter_mut().zip(&self.e) {
+            *largest = larger(*largest, e.abs());
         }
     }
 

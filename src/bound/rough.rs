@@ -3,9 +3,15 @@
 //! Such a jump fakes a clean convergence (order 1 from a scheme of order 1) and defeats extrapolation. On the
 //! finest mesh four steps lie in each step of the run: for smooth rates the fourth difference over them is far
 //! below the second ones; a jump makes them alike.
+//!
+//! The same mesh is probed once inside each step, at a place that no scheme and no halving samples: rates that
+//! repeat with the steps (an oscillation that all three meshes meet in the same phase, say) show there.
 
 use crate::arithmetic::larger;
+use crate::plan::RunPlan;
+use crate::run::system::System;
 use crate::run::{Accepted, Flip, Observer};
+use crate::scheme::rates::Rates;
 
 /// A jump that was found: which state's rate, when, and how much it may move that state.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -28,7 +34,16 @@ pub(super) struct RoughWatch {
     h: f64,
     /// The worst finding of every state.
     pub worst: Vec<Option<Rough>>,
+    /// The worst defect of the dense output at the probe, for every state: step times defect.
+    pub probed: Vec<Option<Rough>>,
+    system: System,
+    y: Vec<f64>,
+    slope: Vec<f64>,
+    rates: Vec<f64>,
 }
+
+/// Place of the probe in a step: two less the golden ratio, far from all nodes of schemes and their halves.
+const PROBE: f64 = 0.381_966_011_250_105_1;
 
 /// Steps count as equal if they differ by less than this share.
 const EQUAL: f64 = 1e-6;
@@ -38,9 +53,42 @@ const SHARE: f64 = 0.5;
 const NOISE: f64 = 64.0;
 
 impl RoughWatch {
-    /// A watch for so many states.
-    pub(super) fn new(states: usize) -> Self {
-        RoughWatch { states, rows: vec![vec![0.0; states]; 5], filled: 0, h: 0.0, worst: vec![None; states] }
+    /// A watch for a run.
+    pub(super) fn new(plan: &RunPlan) -> Self {
+        let states = plan.start.len();
+        RoughWatch {
+            states,
+            rows: vec![vec![0.0; states]; 5],
+            filled: 0,
+            h: 0.0,
+            worst: vec![None; states],
+            probed: vec![None; states],
+            system: System::new(&plan.graph, &plan.rates, &plan.parameters),
+            y: vec![0.0; states],
+            slope: vec![0.0; states],
+            rates: vec![0.0; states],
+        }
+    }
+
+    fn probe(&mut self, step: &Accepted<'_>) {
+        step.piece.value(PROBE, &mut self.y);
+        step.piece.slope(PROBE, &mut self.slope);
+        self.system.modes.clear();
+        self.system.modes.extend_from_slice(step.modes);
+        let time = step.piece.time(PROBE);
+        self.system.rates(time, &self.y, &mut self.rates);
+        let h = step.piece.h();
+        for i in 0..self.states {
+            // A rate that is not finite at the probe is the worst of all.
+            let off = h * (self.slope[i] - self.rates[i]).abs();
+            let impact = if off.is_finite() { off } else { f64::INFINITY };
+            // Rounding of the polynomial's coefficients.
+            let noise = NOISE * 16.0 * f64::EPSILON * (self.y[i].abs() + h * self.rates[i].abs());
+            let counts = impact.is_infinite() || impact > noise;
+            if counts && self.probed[i].is_none_or(|worst| impact > worst.impact) {
+                self.probed[i] = Some(Rough { state: i, time, impact });
+            }
+        }
     }
 
     fn judge(&mut self, end: f64) {
@@ -62,6 +110,7 @@ impl RoughWatch {
 
 impl Observer for RoughWatch {
     fn step(&mut self, step: &Accepted<'_>) {
+        self.probe(step);
         let h = step.piece.h();
         if self.filled == 0 || (h - self.h).abs() > EQUAL * h {
             self.rows[0].copy_from_slice(step.f);

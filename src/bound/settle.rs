@@ -10,7 +10,7 @@ use crate::model::graph::{Graph, NodeId};
 use crate::plan::{Nominal, RunPlan};
 use crate::run::advance::{FrozenMesh, Ran, Runner, watched};
 use crate::run::path::ExactPath;
-use crate::run::sample::{DriftWatch, ExactWatch, Sampler, Times};
+use crate::run::sample::{DriftWatch, EndSampler, ExactWatch, Sampler, Times};
 use crate::run::spectrum::SpectrumWatch;
 use crate::run::stop::Stop;
 use crate::run::system::{System, Values};
@@ -55,11 +55,12 @@ pub fn settle(plan: &RunPlan, chosen: &Chosen) -> Result<RunOutcome, Stop> {
     let bounded = plan.bound != BoundAsked::None;
     let mut halved: Vec<Result<Halved, Stop>> = Vec::new();
     if bounded {
+        let ends: Vec<f64> = base.ends.rows.iter().map(|(time, _)| *time).collect();
         let make = |halvings: u32| {
             let mut graph = plan.graph.clone();
             let watch =
                 Watch::new(&mut graph, &plan.quantities, &plan.rates, &plan.parameters, &watched, plan.from);
-            Halved::run(plan, &watched, &mesh, halvings, watch)
+            Halved::run(plan, &watched, &mesh, halvings, ends.clone(), watch)
         };
         let (half, quarter) = rayon::join(|| make(1), || make(2));
         halved = vec![half, quarter];
@@ -71,6 +72,7 @@ pub fn settle(plan: &RunPlan, chosen: &Chosen) -> Result<RunOutcome, Stop> {
 struct Base {
     watch: Watch,
     samplers: Vec<Sampler>,
+    ends: EndSampler,
     drift: DriftWatch,
     exact: ExactWatch,
     exact_track: Option<ExactTrack>,
@@ -101,6 +103,7 @@ impl Base {
         Base {
             watch: watch(graph),
             samplers: samplers(plan),
+            ends: EndSampler::choosing(),
             drift: DriftWatch::new(Values::new(graph, &nodes, &plan.parameters), plan.from, &plan.start),
             exact: ExactWatch::new(Values::new(graph, &forms, &plan.parameters), exact_states, plan.from),
             exact_track,
@@ -116,7 +119,8 @@ impl Base {
         chosen: &Chosen,
         watched: &[bool],
     ) -> Result<(Steps, FrozenMesh, Ran), Stop> {
-        let mut observers: Vec<&mut dyn Observer> = vec![&mut self.watch, &mut self.drift, &mut self.exact];
+        let mut observers: Vec<&mut dyn Observer> =
+            vec![&mut self.watch, &mut self.ends, &mut self.drift, &mut self.exact];
         observers.extend(self.samplers.iter_mut().map(|sampler| sampler as &mut dyn Observer));
         observers.extend(self.traces.iter_mut().map(|trace| trace as &mut dyn Observer));
         if let Some(track) = &mut self.exact_track {
@@ -234,6 +238,7 @@ struct Halved {
     ran: Ran,
     readings: Vec<Reading>,
     samplers: Vec<Sampler>,
+    ends: EndSampler,
     rough: RoughWatch,
 }
 
@@ -243,11 +248,13 @@ impl Halved {
         watched: &[bool],
         mesh: &FrozenMesh,
         halvings: u32,
+        ends: Vec<f64>,
         mut watch: Watch,
     ) -> Result<Self, Stop> {
         let mut samplers = samplers(plan);
-        let mut rough = RoughWatch::new(plan.start.len());
-        let mut observers: Vec<&mut dyn Observer> = vec![&mut watch];
+        let mut rough = RoughWatch::new(plan);
+        let mut ends = EndSampler::at(ends);
+        let mut observers: Vec<&mut dyn Observer> = vec![&mut watch, &mut ends];
         observers.extend(samplers.iter_mut().map(|sampler| sampler as &mut dyn Observer));
         if halvings == 2 {
             observers.push(&mut rough);
@@ -255,7 +262,7 @@ impl Halved {
         let limit = plan.limit.saturating_mul(1 << (halvings + 1));
         let ran =
             Runner::new(plan, watched, limit)?.over(&mesh.nominal, &mesh.cuts, halvings, &mut observers)?;
-        Ok(Halved { ran, readings: watch.readings(), samplers, rough })
+        Ok(Halved { ran, readings: watch.readings(), samplers, ends, rough })
     }
 }
 
@@ -403,26 +410,26 @@ fn parted(plan: &RunPlan, base: &Base, done: &[&Halved]) -> Vec<bool> {
 /// A jump or kink inside a step that is large beside the error of the state it acts on.
 fn hidden_jump(plan: &RunPlan, base: &Base, half: &Halved, quarter: &Halved) -> Option<String> {
     let n = plan.start.len();
-    let mut errors = vec![0.0; n];
-    let rows = |sampler: &Sampler, k: usize, i: usize| sampler.rows().get(k * n + i).copied().unwrap_or(0.0);
-    for (i, error) in errors.iter_mut().enumerate() {
-        for k in 0..=STATE_SAMPLES {
-            let here = rows(&base.samplers[STATES], k, i);
-            *error = larger(*error, (here - rows(&quarter.samplers[STATES], k, i)).abs());
-            *error = larger(*error, (here - rows(&half.samplers[STATES], k, i)).abs());
-        }
-        if let Some(follower) = &base.follower {
-            *error = larger(*error, follower.largest[i]);
+    let mut errors = base.ends.differences(&half.ends, n);
+    for (error, other) in errors.iter_mut().zip(base.ends.differences(&quarter.ends, n)) {
+        *error = larger(*error, other);
+    }
+    if let Some(follower) = &base.follower {
+        for (error, other) in errors.iter_mut().zip(&follower.largest) {
+            *error = larger(*error, *other);
         }
     }
-    let found = quarter
-        .rough
-        .worst
-        .iter()
-        .flatten()
-        .find(|rough| rough.impact > ROUGH_SHARE * errors[rough.state])?;
+    let found =
+        quarter.rough.worst.iter().flatten().find(|rough| rough.impact > ROUGH_SHARE * errors[rough.state]);
+    if let Some(found) = found {
+        return Some(format!(
+            "the rate of {} jumps or bends inside a step near t = {:.6}, where no mesh point marks it",
+            plan.columns[found.state].name, found.time
+        ));
+    }
+    let unseen = quarter.rough.probed.iter().flatten().find(|rough| rough.impact > errors[rough.state])?;
     Some(format!(
-        "the rate of {} jumps or bends inside a step near t = {:.6}, where no mesh point marks it",
-        plan.columns[found.state].name, found.time
+        "the rate of {} changes inside the steps near t = {:.6} in a way that the meshes do not see",
+        plan.columns[unseen.state].name, unseen.time
     ))
 }

@@ -120,7 +120,8 @@ pub fn templates(settings: &Settings) -> Result<(Templates, Vec<FileDigest>), Is
         digests.push(FileDigest::of(Was::Read, format!("templates/{name}"), text.as_bytes()));
         files.push((name, text));
     }
-    let templates = Templates::overlaid(folder, &files).map_err(|error| IssueError::Template(error.to_string()))?;
+    let templates =
+        Templates::overlaid(folder, &files).map_err(|error| IssueError::Template(error.to_string()))?;
     Ok((templates, digests))
 }
 

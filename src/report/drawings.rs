@@ -15,7 +15,7 @@ const MOST_QUANTITIES: usize = 7;
 
 /// A drawn chart.
 #[derive(Clone, Debug, PartialEq, Eq)]
-pub struct Drawing {
+pub(super) struct Drawing {
     /// The SVG.
     pub svg: String,
     /// What the reader should know of the numbers in it: bounds of the curves, points left out.
@@ -23,7 +23,7 @@ pub struct Drawing {
 }
 
 /// Draws the charts of a study, in the order of its blocks. `None` where there is nothing to draw.
-pub fn charts(study: &Study, outcome: &Outcome) -> Vec<Option<Drawing>> {
+pub(super) fn charts(study: &Study, outcome: &Outcome) -> Vec<Option<Drawing>> {
     study.blocks.charts.iter().map(|block| draw(study, block, outcome)).collect()
 }
 
@@ -50,7 +50,7 @@ fn draw(study: &Study, block: &ChartBlock, outcome: &Outcome) -> Option<Drawing>
 }
 
 /// The title of a chart, or its name where it has none.
-pub fn title(block: &ChartBlock) -> String {
+pub(super) fn title(block: &ChartBlock) -> String {
     block.title.as_ref().map_or_else(|| block.name.value.clone(), |title| title.value.clone())
 }
 
@@ -65,7 +65,8 @@ fn curves(
     let mut series = Vec::new();
     let mut notes: Vec<String> = Vec::new();
     let mut first: Option<(&RunOutcome, &Curve)> = None;
-    let several_runs = lines.iter().chain(points).any(|trace| trace.run.value != lines.first().map_or("", |l| &l.run.value));
+    let several_runs =
+        lines.iter().chain(points).any(|trace| trace.run.value != lines.first().map_or("", |l| &l.run.value));
     let label = |trace: &Trace| {
         trace.label.as_ref().map_or_else(
             || {
@@ -98,7 +99,7 @@ fn curves(
         let x = if against == "t" { rows.times.clone() } else { column(against)?.values.clone() };
         if first.is_none() {
             x_unit = if against == "t" { run.time_unit.clone() } else { column(against)?.unit.clone() };
-            y_unit = y.unit.clone();
+            y_unit.clone_from(&y.unit);
         }
         series.push(Series {
             label: format!("{} (rows)", label(trace)),
@@ -107,7 +108,8 @@ fn curves(
         });
     }
     let same: Vec<&str> = lines.iter().chain(points).map(|trace| trace.expression.value.as_str()).collect();
-    let y_name = if same.windows(2).all(|pair| pair[0] == pair[1]) { same.first().copied().unwrap_or("") } else { "" };
+    let y_name =
+        if same.windows(2).all(|pair| pair[0] == pair[1]) { same.first().copied().unwrap_or("") } else { "" };
     let about = first.and_then(|(run, _)| {
         let model = &study.blocks.models[run.model];
         let state = model.states.iter().find(|entry| entry.name.value == y_name)?;
@@ -188,14 +190,18 @@ fn curve_note(label: &str, curve: &Curve) -> String {
     let unit = curve.unit.as_ref().map_or_else(String::new, |unit| format!(" {unit}"));
     match (curve.bound, curve.grade) {
         (Some(bound), grade) if grade != Grade::Unbounded => {
-            format!("{label}: estimated bound along the curve {}{unit} ({})", digits::size(bound), grade.word())
+            format!(
+                "{label}: estimated bound along the curve {}{unit} ({})",
+                digits::size(bound),
+                grade.word()
+            )
         }
         _ => format!("{label}: no bound along the whole curve"),
     }
 }
 
 /// The convergence chart of a run's quantities.
-pub fn run_convergence(run: &RunOutcome) -> Option<Drawing> {
+pub(super) fn run_convergence(run: &RunOutcome) -> Option<Drawing> {
     let list: Vec<(&RunOutcome, &Quantity, String)> = run
         .quantities
         .iter()
@@ -230,18 +236,22 @@ fn convergence_chart(id: &str, title: &str, list: &[(&RunOutcome, &Quantity, Str
     }
     let unit = list.first().and_then(|(run, ..)| run.time_unit.clone());
     let x_title = axis_title("Largest step", "h", unit.as_deref());
-    let description = "Relative distance from the extrapolated limit on three meshes, against the largest step";
+    let description =
+        "Relative distance from the extrapolated limit on three meshes, against the largest step";
     let svg = convergence::draw(id, title, description, &x_title, &errors)?;
     let note = if hidden.is_empty() {
         String::new()
     } else {
-        format!("without a slope to draw (differences at rounding level or not monotone): {}", hidden.join(", "))
+        format!(
+            "without a slope to draw (differences at rounding level or not monotone): {}",
+            hidden.join(", ")
+        )
     };
     Some(Drawing { svg, note })
 }
 
 /// The stability chart of a run.
-pub fn run_stability(run: &RunOutcome) -> Drawing {
+pub(super) fn run_stability(run: &RunOutcome) -> Drawing {
     let title = format!("Stability region of {} and run {}", run.scheme.name, run.name);
     stability_chart(&format!("stability-{}", run.name), &title, run)
 }
@@ -250,14 +260,18 @@ fn stability_chart(id: &str, title: &str, run: &RunOutcome) -> Drawing {
     let exact = &run.scheme.tableau.exact;
     let region = Stability::of_weights(exact, &exact.b);
     let points: Vec<(f64, f64)> = run.spectrum.iter().map(|point| (point.re, point.im)).collect();
-    let description =
-        "The region where the scheme damps a linear problem, with step times eigenvalue of the Jacobian along the run";
+    let description = "The region where the scheme damps a linear problem, with step times eigenvalue of the Jacobian along the run";
     let (svg, outside) = stability::draw(id, title, description, &region.boundary(OUTLINE), &points);
-    let unstable = points.iter().filter(|(re, im)| *re < 0.0 && region.amplification((*re, *im)) > 1.0 + 1e-9).count();
+    let unstable =
+        points.iter().filter(|(re, im)| *re < 0.0 && region.amplification((*re, *im)) > 1.0 + 1e-9).count();
     let mut note = match (points.len(), unstable) {
         (0, _) => "the model has too many states for its eigenvalues to be shown".to_owned(),
-        (all, 0) => format!("all {all} damped eigenvalues sampled along the run lie in the region or decay is not asked of them"),
-        (all, n) => format!("{n} of {all} sampled eigenvalues with a negative real part lie outside the region: there the scheme does not damp what the model damps"),
+        (all, 0) => format!(
+            "all {all} damped eigenvalues sampled along the run lie in the region or decay is not asked of them"
+        ),
+        (all, n) => format!(
+            "{n} of {all} sampled eigenvalues with a negative real part lie outside the region: there the scheme does not damp what the model damps"
+        ),
     };
     if outside > 0 {
         note = format!("{note}; {outside} lie beyond the frame");

@@ -16,7 +16,8 @@ pub(super) fn quantity_id(run: &str, quantity: &str) -> String {
 pub(super) fn ledger(run: &RunOutcome, model: &Model, cites: &dyn Fn(&str) -> Vec<String>) -> LedgerView {
     let unit = run.time_unit.as_deref();
     let labels = ["the run itself", "every step halved", "halved again"];
-    let mut quantities: Vec<QuantityView> = run.quantities.iter().map(|quantity| line(run, quantity, cites)).collect();
+    let mut quantities: Vec<QuantityView> =
+        run.quantities.iter().map(|quantity| line(run, quantity, cites)).collect();
     let mut values: Vec<&mut String> = Vec::new();
     let mut bounds: Vec<&mut String> = Vec::new();
     for quantity in &mut quantities {
@@ -66,7 +67,11 @@ pub(super) fn ledger(run: &RunOutcome, model: &Model, cites: &dyn Fn(&str) -> Ve
             .iter()
             .map(|error| {
                 let time = with_unit(&size_with(error.time, 4), unit);
-                format!("{}: largest true error at step ends {} at t = {time}", error.state, size(error.largest))
+                format!(
+                    "{}: largest true error at step ends {} at t = {time}",
+                    error.state,
+                    size(error.largest)
+                )
             })
             .collect(),
         data: run.rows.as_ref().map_or_else(String::new, |_| format!("data/{}.csv", run.name)),
@@ -76,7 +81,11 @@ pub(super) fn ledger(run: &RunOutcome, model: &Model, cites: &dyn Fn(&str) -> Ve
 }
 
 /// A quantity's line.
-pub(super) fn line(run: &RunOutcome, quantity: &Quantity, cites: &dyn Fn(&str) -> Vec<String>) -> QuantityView {
+pub(super) fn line(
+    run: &RunOutcome,
+    quantity: &Quantity,
+    cites: &dyn Fn(&str) -> Vec<String>,
+) -> QuantityView {
     let estimates = &quantity.estimates;
     let number = parts(quantity.value, quantity.bound, quantity.whole, quantity.unit.as_deref());
     let estimate = |value: Option<f64>| value.map_or_else(|| "\u{2013}".to_owned(), size);
@@ -96,14 +105,20 @@ pub(super) fn line(run: &RunOutcome, quantity: &Quantity, cites: &dyn Fn(&str) -
             Some(order) => format!("{order:.2} of {}", estimates.formal_order),
             None => format!("\u{2013} of {}", estimates.formal_order),
         },
-        meshes: estimates.values.iter().map(|value| value.map_or_else(|| "\u{2013}".to_owned(), plain)).collect(),
+        meshes: estimates
+            .values
+            .iter()
+            .map(|value| value.map_or_else(|| "\u{2013}".to_owned(), plain))
+            .collect(),
         halving: estimate(estimates.halving),
         companion: estimate(estimates.companion),
         safety: plain(estimates.safety),
         truncation: size(estimates.truncation),
         interpolation: size(estimates.interpolation),
         rounding: size(estimates.rounding),
-        time: quantity.time.map_or_else(String::new, |time| with_unit(&size_with(time, 4), run.time_unit.as_deref())),
+        time: quantity
+            .time
+            .map_or_else(String::new, |time| with_unit(&size_with(time, 4), run.time_unit.as_deref())),
         true_error: quantity.true_error.map_or_else(String::new, size),
     }
 }

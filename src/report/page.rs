@@ -104,7 +104,9 @@ fn meaning(grade: Grade) -> &'static str {
         Grade::Converged => {
             "every bound rests on three meshes that converge at the order of the scheme, or agree to rounding"
         }
-        Grade::Indicated => "some bounds are wide indications: the meshes approach each other, but not as theory says",
+        Grade::Indicated => {
+            "some bounds are wide indications: the meshes approach each other, but not as theory says"
+        }
         Grade::Unbounded => "some numbers have no bound: the ledger says why",
     }
 }
@@ -112,7 +114,8 @@ fn meaning(grade: Grade) -> &'static str {
 fn inputs_of(model: &Model) -> InputsView {
     let mut rows: Vec<InputView> = model.parameters.iter().map(parameter).collect();
     for state in &model.states {
-        let text = |text: &Option<crate::study::Text>| text.as_ref().map_or_else(String::new, |t| t.value.clone());
+        let text =
+            |text: &Option<crate::study::Text>| text.as_ref().map_or_else(String::new, |t| t.value.clone());
         rows.push(InputView {
             name: state.entry.name.value.clone(),
             kind: "start value".to_owned(),
@@ -133,7 +136,8 @@ fn inputs_of(model: &Model) -> InputsView {
 }
 
 fn parameter(entry: &ParameterEntry) -> InputView {
-    let text = |text: &Option<crate::study::Text>| text.as_ref().map_or_else(String::new, |t| t.value.clone());
+    let text =
+        |text: &Option<crate::study::Text>| text.as_ref().map_or_else(String::new, |t| t.value.clone());
     let with_unit = |value: &crate::unit::Value| match &value.unit {
         Some(unit) => format!("{} {unit}", value.digits),
         None => value.digits.clone(),

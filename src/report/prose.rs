@@ -14,7 +14,7 @@ use super::view::{
 };
 use crate::arithmetic::larger;
 use crate::bound::{Grade, Outcome, RowColumn};
-use crate::figure::digits::{decade, rough, shown_at, size};
+use crate::figure::digits::{MOST_DIGITS, decade, rough, shown_at, size};
 use crate::model::Model;
 use crate::study::block::chart::ChartBlock;
 use crate::study::block::criteria::{CriteriaBlock, Verdict};
@@ -103,7 +103,8 @@ impl Prose<'_> {
 
     fn model(&self, i: usize) -> Result<String, TemplateError> {
         let model = &self.models[i];
-        let text = |text: &Option<crate::study::Text>| text.as_ref().map_or_else(String::new, |t| t.value.clone());
+        let text =
+            |text: &Option<crate::study::Text>| text.as_ref().map_or_else(String::new, |t| t.value.clone());
         let equation = |expression: &crate::model::Expression| EquationView {
             name: expression.name.value.clone(),
             text: expression.text.value.clone(),
@@ -161,11 +162,13 @@ impl Prose<'_> {
             None => (String::new(), "nothing can be drawn: see the ledger".to_owned()),
         };
         let id = format!("figure-{}", block.name.value);
-        self.templates.render("chart.html", &ChartView { id, number, title: drawings::title(block), svg, note })
+        self.templates
+            .render("chart.html", &ChartView { id, number, title: drawings::title(block), svg, note })
     }
 
     fn table(&self, block: &TableBlock, number: usize) -> Result<String, TemplateError> {
-        let title = block.title.as_ref().map_or_else(|| block.name.value.clone(), |title| title.value.clone());
+        let title =
+            block.title.as_ref().map_or_else(|| block.name.value.clone(), |title| title.value.clone());
         let mut view = TableView {
             id: format!("table-{}", block.name.value),
             number,
@@ -202,25 +205,27 @@ impl Prose<'_> {
         let wanted: Vec<_> = if columns.is_empty() {
             rows.columns.iter().take(states).collect()
         } else {
-            let find = |name: &crate::study::Text| rows.columns.iter().find(|column| column.name == name.value);
+            let find =
+                |name: &crate::study::Text| rows.columns.iter().find(|column| column.name == name.value);
             columns.iter().filter_map(find).collect()
         };
         view.heads.push(HeadView { name: "t".to_owned(), unit: run.time_unit.clone().unwrap_or_default() });
         for column in &wanted {
-            view.heads.push(HeadView {
-                name: column.name.clone(),
-                unit: column.unit.clone().unwrap_or_default(),
-            });
+            view.heads
+                .push(HeadView { name: column.name.clone(), unit: column.unit.clone().unwrap_or_default() });
         }
         // One place for a whole column: that which its largest bound supports.
         let place_of = |column: &RowColumn| {
             let largest = column.bounds.iter().flatten().fold(0.0, |largest, bound| larger(largest, *bound));
-            (largest > 0.0).then(|| decade(largest) - 1)
+            let size = column.values.iter().fold(0.0, |size, value| larger(size, value.abs()));
+            let coarsest = if size > 0.0 { decade(size) - MOST_DIGITS + 1 } else { i32::MIN };
+            (largest > 0.0).then(|| (decade(largest) - 1).max(coarsest))
         };
         let places: Vec<Option<i32>> = wanted.iter().map(|column| place_of(column)).collect();
         let stride = rows.times.len().div_ceil(MOST_ROWS).max(1);
         for k in (0..rows.times.len()).step_by(stride) {
-            let time = CellView { value: size_plain(rows.times[k]), bound: String::new(), grade: String::new() };
+            let time =
+                CellView { value: size_plain(rows.times[k]), bound: String::new(), grade: String::new() };
             let mut cells = vec![time];
             for (column, place) in wanted.iter().zip(&places) {
                 let number = match (column.bounds[k], place) {
@@ -253,9 +258,10 @@ impl Prose<'_> {
                 text: criterion.text.clone(),
                 target: quantity.map_or_else(String::new, |(run, q)| quantity_id(&run.name, &q.name)),
                 shown: quantity.map_or_else(String::new, |(_, quantity)| shown(quantity)),
-                margin: criterion
-                    .margin
-                    .map_or_else(|| "\u{2013}".to_owned(), |margin| format!("{}{unit}", rough_or_plain(margin))),
+                margin: criterion.margin.map_or_else(
+                    || "\u{2013}".to_owned(),
+                    |margin| format!("{}{unit}", rough_or_plain(margin)),
+                ),
                 verdict: criterion.verdict.words().to_owned(),
                 class: match criterion.verdict {
                     Verdict::Met => "met",
@@ -263,7 +269,10 @@ impl Prose<'_> {
                     Verdict::NotMet => "not-met",
                 }
                 .to_owned(),
-                expect: criterion.expect.as_ref().map_or_else(String::new, |(verdict, _)| verdict.words().to_owned()),
+                expect: criterion
+                    .expect
+                    .as_ref()
+                    .map_or_else(String::new, |(verdict, _)| verdict.words().to_owned()),
                 because: criterion.expect.as_ref().map_or_else(String::new, |(_, because)| because.clone()),
                 as_expected: criterion.is_in_order(),
             });

@@ -70,7 +70,10 @@ fn percent(path: &str) -> String {
         if byte.is_ascii_alphanumeric() || b"-._~/".contains(&byte) {
             text.push(char::from(byte));
         } else {
-            text.push_str(&format!("%{byte:02X}"));
+            text.push('%');
+            text.extend(
+                [byte >> 4, byte & 15].map(|half| char::from(b"0123456789ABCDEF"[usize::from(half)])),
+            );
         }
     }
     text

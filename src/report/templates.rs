@@ -57,17 +57,15 @@ impl Templates {
     pub fn overlaid(folder: &Path, files: &[(String, String)]) -> Result<Self, TemplateError> {
         let mut list = BUILT_IN.map(|(name, text)| (name.to_owned(), text.to_owned()));
         for (name, text) in files {
-            match list.iter_mut().find(|(known, _)| known == name) {
-                Some(entry) => entry.1.clone_from(text),
-                None => {
-                    let known: Vec<&str> = BUILT_IN.iter().map(|(name, _)| *name).collect();
-                    return Err(TemplateError(format!(
-                        "{}: no template of that name; there are {}",
-                        folder.join(name).display(),
-                        known.join(", ")
-                    )));
-                }
-            }
+            let Some(entry) = list.iter_mut().find(|(known, _)| known == name) else {
+                let known: Vec<&str> = BUILT_IN.iter().map(|(name, _)| *name).collect();
+                return Err(TemplateError(format!(
+                    "{}: no template of that name; there are {}",
+                    folder.join(name).display(),
+                    known.join(", ")
+                )));
+            };
+            entry.1.clone_from(text);
         }
         Self::from(&list)
     }
@@ -84,9 +82,4 @@ impl Templates {
         let context = Context::from_serialize(view).map_err(|error| TemplateError(error.to_string()))?;
         self.tera.render(name, &context).map_err(|error| TemplateError(error.to_string()))
     }
-}
-
-/// Names of the built-in templates with their texts.
-pub(super) fn built_in() -> &'static [(&'static str, &'static str)] {
-    &BUILT_IN
 }

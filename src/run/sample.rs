@@ -92,6 +92,77 @@ impl Observer for Sampler {
     }
 }
 
+/// Most step ends that are kept for comparing meshes.
+const MOST_ENDS: usize = 128;
+
+/// The states at some step ends, which refined meshes share: there no interpolation blurs a comparison.
+#[derive(Debug)]
+pub struct EndSampler {
+    /// The ends wanted; `None` where they are chosen as the run goes by.
+    wanted: Option<Vec<f64>>,
+    next: usize,
+    stride: usize,
+    seen: usize,
+    /// Time and state.
+    pub rows: Vec<(f64, Vec<f64>)>,
+}
+
+impl EndSampler {
+    /// Chooses evenly among all steps that do not end at a kink or jump.
+    pub fn choosing() -> Self {
+        EndSampler { wanted: None, next: 0, stride: 1, seen: 0, rows: Vec::new() }
+    }
+    /// Takes the steps that end at these times.
+    pub fn at(times: Vec<f64>) -> Self {
+        EndSampler { wanted: Some(times), next: 0, stride: 1, seen: 0, rows: Vec::new() }
+    }
+    /// The largest difference of every state to another mesh at the ends that both have.
+    pub fn differences(&self, other: &EndSampler, states: usize) -> Vec<f64> {
+        let mut largest = vec![0.0; states];
+        let mut rest = other.rows.iter().peekable();
+        for (time, state) in &self.rows {
+            while rest.peek().is_some_and(|(other, _)| other < time) {
+                rest.next();
+            }
+            if let Some((_, other)) = rest.peek().filter(|(other, _)| other == time) {
+                for i in 0..states {
+                    largest[i] = larger(largest[i], (state[i] - other[i]).abs());
+                }
+            }
+        }
+        largest
+    }
+}
+
+impl Observer for EndSampler {
+    fn step(&mut self, step: &Accepted<'_>) {
+        let end = step.piece.t_new;
+        let take = match &self.wanted {
+            Some(times) => {
+                while times.get(self.next).is_some_and(|time| *time < end) {
+                    self.next += 1;
+                }
+                times.get(self.next) == Some(&end)
+            }
+            None => {
+                self.seen += usize::from(!step.cut);
+                !step.cut && self.seen.is_multiple_of(self.stride)
+            }
+        };
+        if take {
+            self.rows.push((end, step.piece.end().to_vec()));
+            if self.wanted.is_none() && self.rows.len() > MOST_ENDS {
+                let mut keep = false;
+                self.rows.retain(|_| {
+                    keep = !keep;
+                    !keep
+                });
+                self.stride *= 2;
+            }
+        }
+    }
+}
+
 /// The largest distance of some expressions from their start values, at step ends.
 #[derive(Debug)]
 pub struct DriftWatch {

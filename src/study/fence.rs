@@ -116,7 +116,9 @@ fn misspelt(info: &Text, first: &str, faults: &mut Faults) -> Fence {
             .is_some_and(|rest| rest.starts_with(|c: char| !c.is_alphanumeric() && c != '-'))
     });
     let near = nearest(first, KINDS.iter().map(|(word, _)| *word));
-    let Some(likely) = glued.or_else(|| near.first().copied()) else { return Fence::Code };
+    // A longer word that starts like a kind is another word, and likely a language.
+    let near = near.into_iter().find(|word| first.len().abs_diff(word.len()) <= 2);
+    let Some(likely) = glued.or(near) else { return Fence::Code };
     let message = format!("`{}` is no kind of block", clip(first));
     faults.add(Fault::error("unknown-kind", info.part(0, first.len()), message).help(format!(
         "write `{likely} NAME` if that is meant; a fence to be shown as it is can start with `text`"
@@ -165,7 +167,9 @@ mod tests {
             "java",
             "diff",
             "make",
-            "mermaid-like",
+            "modelling",
+            "tablet-like",
+            "runtime",
             "math",
             "toml",
         ] {

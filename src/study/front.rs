@@ -27,7 +27,7 @@ pub(super) fn read(
         return (None, Some(start));
     }
     let mut at = start + first.len();
-    let mut excerpt = Excerpt::new(file, at);
+    let mut excerpt = Excerpt::new(text, file, at);
     for line in lines {
         let bare = line.trim_end();
         if bare == "---" {
@@ -49,7 +49,7 @@ pub(super) fn read(
     (None, None)
 }
 
-fn entries(excerpt: &Excerpt, first_line: Span, faults: &mut Faults) -> Option<FrontMatter> {
+fn entries(excerpt: &Excerpt<'_>, first_line: Span, faults: &mut Faults) -> Option<FrontMatter> {
     if excerpt.is_blank() {
         faults.add(without_title(first_line));
         return None;

@@ -2,6 +2,10 @@
 //!
 //! Enters: the text of a study. Leaves: a [`Study`]. This stage knows the grammar of the blocks and of
 //! quantities, and nothing of expressions: a [`Text`] that holds one is handed on as it stands.
+//!
+//! Invariants: what leaves is safe to render (no raw HTML, no image, no link that could run something), and its
+//! blocks are without errors of their own. Where no error at all was found, every run, quantity and model that
+//! a block or a quote names is in the study.
 
 pub mod block;
 pub mod source;

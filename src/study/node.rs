@@ -15,7 +15,8 @@ use crate::fault::{Fault, Faults, FileId, Span, clip};
 /// A YAML text that was put together from parts of a file: a fence in a list loses its indent, and a line
 /// end of two bytes one of them.
 #[derive(Clone, Debug)]
-pub(super) struct Excerpt {
+pub(super) struct Excerpt<'a> {
+    source: &'a str,
     file: FileId,
     text: String,
     /// Where each part starts in `text`, where in the file, and its length.
@@ -24,10 +25,10 @@ pub(super) struct Excerpt {
     at: usize,
 }
 
-impl Excerpt {
-    /// An empty excerpt at a byte of a file.
-    pub(super) fn new(file: FileId, at: usize) -> Self {
-        Excerpt { file, text: String::new(), parts: Vec::new(), at }
+impl<'a> Excerpt<'a> {
+    /// An empty excerpt at a byte of a file with the text `source`.
+    pub(super) fn new(source: &'a str, file: FileId, at: usize) -> Self {
+        Excerpt { source, file, text: String::new(), parts: Vec::new(), at }
     }
     /// Adds a text that stands at byte `at` of the file.
     pub(super) fn push(&mut self, text: &str, at: usize) {
@@ -53,9 +54,10 @@ impl Excerpt {
             None => self.at,
         }
     }
-    /// Whether the bytes of `start..end` stand side by side in the file.
+    /// Whether the bytes `start..end` stand in the file as they are.
     fn is_whole(&self, start: usize, end: usize) -> bool {
-        end <= start || self.byte(end - 1) - self.byte(start) == end - 1 - start
+        let span = self.span(start, end);
+        self.source.get(span.start..span.end) == self.text.get(start..end)
     }
     /// The end of the line that byte `start` is on, or `end` where that comes first.
     fn first_line(&self, start: usize, end: usize) -> usize {
@@ -116,7 +118,7 @@ pub(super) enum Sort {
 }
 
 /// Reads a text; `None` with a fault where it is refused or holds nothing.
-pub(super) fn parse(excerpt: &Excerpt, what: &str, faults: &mut Faults) -> Option<Node> {
+pub(super) fn parse(excerpt: &Excerpt<'_>, what: &str, faults: &mut Faults) -> Option<Node> {
     let events = match yaml::events(&excerpt.text) {
         Ok(events) => events,
         Err(refused) => {
@@ -149,7 +151,7 @@ pub(super) fn parse(excerpt: &Excerpt, what: &str, faults: &mut Faults) -> Optio
 }
 
 struct Builder<'a> {
-    excerpt: &'a Excerpt,
+    excerpt: &'a Excerpt<'a>,
     events: std::vec::IntoIter<Event>,
     faults: &'a mut Faults,
 }
@@ -340,7 +342,7 @@ mod tests {
     use super::*;
 
     fn tree(text: &str) -> (Option<Node>, Faults) {
-        let mut excerpt = Excerpt::new(FileId(0), 0);
+        let mut excerpt = Excerpt::new(text, FileId(0), 0);
         excerpt.push(text, 0);
         let mut faults = Faults::new();
         (parse(&excerpt, "the block", &mut faults), faults)
@@ -383,7 +385,7 @@ mod tests {
     #[test]
     fn places_follow_the_parts_of_the_excerpt() {
         let file = "> a: 1\r\n> b: é x\r\n> c: \"q\\n\"\r\n";
-        let mut excerpt = Excerpt::new(FileId(0), 0);
+        let mut excerpt = Excerpt::new(file, FileId(0), 0);
         for (i, line) in file.split_inclusive("\r\n").enumerate() {
             let at = file.split_inclusive("\r\n").take(i).map(str::len).sum::<usize>();
             excerpt.push(line[2..].trim_end(), at + 2);

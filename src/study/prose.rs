@@ -275,7 +275,7 @@ impl<'a> Reader<'a, '_> {
                 self.names.insert(key.clone(), name.at);
             }
         }
-        let mut excerpt = Excerpt::new(self.file, head.end);
+        let mut excerpt = Excerpt::new(self.source, self.file, head.end);
         for (text, at) in &code.pieces {
             excerpt.push(text, *at);
         }

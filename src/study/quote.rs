@@ -99,7 +99,7 @@ impl Splitter<'_> {
         let at = self.byte(open);
         let before = self.source.get(..at).unwrap_or_default();
         let backslashes = before.len() - before.trim_end_matches('\\').len();
-        self.source[at..].starts_with('[') && backslashes % 2 == 0
+        self.source.get(at..).is_some_and(|rest| rest.starts_with('[')) && backslashes % 2 == 0
     }
 
     fn quote(&self, open: usize, close: usize, faults: &mut Faults) -> Option<Quote> {

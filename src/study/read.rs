@@ -225,6 +225,7 @@ mod tests {
             "\n1. > ```table x\r\n   > rows: [é, drain.h_edn]\r\n   > ```\r\n",
             &["bad-reference 17:13"],
         );
+        check_after("\n-\t```table x\n\trows: [drain.h_edn]\n\t```\n", &["unknown-quantity 17:15"]);
         check_after(&format!("\n```{block}"), &["open-fence 16:4"]);
         check_after("\n    ```table x\n    rows: [a.b]\n    ```\n", &["indented-fence 16:8"]);
         check_after("\n```python\nrows: [a.b\n```\n\n```\nplain\n```\n", &[]);

@@ -5,7 +5,7 @@ use super::yaml::Refused;
 use crate::fault::Fault;
 
 /// The fault for a refused text, at the place where the slip is rather than where the parser noticed it.
-pub(super) fn fault(text: &str, refused: &Refused, excerpt: &Excerpt) -> Fault {
+pub(super) fn fault(text: &str, refused: &Refused, excerpt: &Excerpt<'_>) -> Fault {
     let (mut start, mut end) = (refused.start, refused.end);
     if refused.syntax {
         if let Some(inside) = refused.inside.filter(|inside| belongs_to(text, *inside, refused)) {
@@ -100,7 +100,7 @@ mod tests {
 
     /// Expects the fault of `text` at `line:column` with `help` in its help.
     fn check(text: &str, place: (usize, usize), help: &str) {
-        let mut excerpt = Excerpt::new(FileId(0), 0);
+        let mut excerpt = Excerpt::new(text, FileId(0), 0);
         excerpt.push(text, 0);
         let fault = fault(text, &events(text).unwrap_err(), &excerpt);
         let before = &text[..fault.at.start];

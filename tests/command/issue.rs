@@ -183,7 +183,7 @@ fn wrong_studies() -> Vec<(&'static str, Vec<u8>, &'static str)> {
         ("too large", spoilt("until: 10", "until: 1e400"), "1e400"),
         ("no step", spoilt("step: 0.5", "step: 0"), "step"),
         ("step back", spoilt("step: 0.5", "step: -0.5"), "step"),
-        ("no rate", spoilt("rates:\n  T: -k*T\n", ""), "T"),
+        ("no rates", spoilt("rates:\n  T: -k*T\n", ""), "lacks the key `rates`"),
     ]
 }
 

@@ -4,6 +4,7 @@
 
 mod arguments;
 mod begin;
+mod issue;
 mod pages;
 mod paths;
 mod streams;

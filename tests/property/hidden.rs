@@ -33,9 +33,8 @@ fn a_jump_hidden_inside_a_step_is_at_most_indicated() {
             count += 1;
             let text = format!("{} step {step} jump at {a}: error {error:e} {quantity:?}", scheme.key);
             // A jump whose effect is small beside the error of the scheme may be overlooked: its bound must hold.
-            if quantity.grade < Grade::Indicated && error > quantity.bound.unwrap() {
-                misgraded.push(text.clone());
-            } else if quantity.grade < Grade::Indicated && scheme.order >= 2 {
+            let broken = error > quantity.bound.unwrap_or(f64::INFINITY);
+            if quantity.grade < Grade::Indicated && (broken || scheme.order >= 2) {
                 misgraded.push(text.clone());
             }
             if quantity.bound.is_some_and(|bound| error > bound) {
@@ -107,4 +106,85 @@ fn a_chaotic_run_beyond_its_horizon_has_no_bound() {
     let (_, outcome) = evaluate("lorenz.md", &study(model, "rk4", 0.01, 40.0)).unwrap();
     let quantity = &outcome.runs[0].quantities[0];
     assert_eq!(quantity.grade, Grade::Unbounded, "{quantity:?}");
+}
+
+/// A pole between mesh points: the integral diverges, so no grade may be good.
+#[test]
+fn a_pole_stepped_over_is_at_most_indicated() {
+    let mut random = Random::new(9);
+    let mut misgraded = Vec::new();
+    for scheme in all() {
+        for _ in 0..40 {
+            let (a, step) = (random.between(0.3, 0.9), random.between(0.01, 0.2));
+            for rate in [
+                format!("1/(t-{a})"),
+                format!("1/(t-{a})^2"),
+                format!("-x+1/abs(t-{a})"),
+                format!("tan(t/{a})"),
+            ] {
+                let until = if rate.contains("tan") { 2.0 } else { 1.0 };
+                let text =
+                    study(&format!("states: {{x: 1}}\nrates:\n  x: \"{rate}\""), scheme.key, step, until);
+                // A mesh point on the pole itself stops the run, which is as good.
+                let Ok((_, outcome)) = evaluate("pole.md", &text) else { continue };
+                let quantity = &outcome.runs[0].quantities[0];
+                if quantity.grade < Grade::Indicated {
+                    misgraded.push(format!("{} step {step}: {rate} {quantity:?}", scheme.key));
+                }
+            }
+        }
+    }
+    assert!(misgraded.is_empty(), "{}:\n{}", misgraded.len(), misgraded.join("\n"));
+}
+
+/// `aim` finds a step whose bound meets the aim, and no larger step of two digits does.
+#[test]
+fn an_aim_is_met_by_the_largest_step_of_two_digits() {
+    let model = "states: {x: 1, v: 0}\nrates: {x: v, v: -4*x - 0.2*v}";
+    let text = |control: &str, scheme: &str| {
+        format!(
+            "---\nstudy: aim\n---\n\n```model m\n{model}\n```\n\n```run r\nmodel: m\nscheme: {scheme}\n{control}\nuntil: 5\nquantities:\n  q: lowest x\n```\n"
+        )
+    };
+    for scheme in ["midpoint", "kutta3", "rk4", "dormand-prince"] {
+        let (_, outcome) = evaluate("aim.md", &text("aim: 1e-5", scheme)).unwrap();
+        let run = &outcome.runs[0];
+        let halfstep::bound::Steps::Aimed { step, trials, .. } = &run.steps else {
+            panic!("{:?}", run.steps)
+        };
+        assert!(run.quantities[0].bound.unwrap() <= 1e-5 && run.quantities[0].grade <= Grade::Converged);
+        assert!(*trials < 40);
+        // The next larger step of two digits does not meet it.
+        let digits = format!("{step:.1e}");
+        let (mantissa, exponent) = digits.split_once('e').unwrap();
+        let larger = (mantissa.parse::<f64>().unwrap() * 10.0).round() as i64 + 1;
+        let next = format!("{larger}e{}", exponent.parse::<i64>().unwrap() - 1);
+        let (_, outcome) = evaluate("next.md", &text(&format!("step: {next}"), scheme)).unwrap();
+        let quantity = &outcome.runs[0].quantities[0];
+        assert!(
+            quantity.bound.is_none_or(|bound| bound > 1e-5) || quantity.grade > Grade::Converged,
+            "{scheme}: {step} was found, {next} meets the aim too: {quantity:?}"
+        );
+    }
+}
+
+/// Forcing that all three meshes meet in the same phase: with four periods a step, every point of every mesh sees a
+/// crest. The exact integral over whole periods is zero.
+#[test]
+fn an_oscillation_in_step_with_the_meshes_is_seen() {
+    for scheme in all() {
+        for periods in [1, 2, 4, 8, 16, 32] {
+            for bound in ["halving", "halving and companion"] {
+                let model = format!("states: {{x: 1}}\nrates: {{x: \"cos(2*pi*{periods}*t/0.1)\"}}");
+                let text = study(&model, scheme.key, 0.1, 2.0)
+                    .replace("until: 2\n", &format!("until: 2\nbound: {bound}\n"));
+                let (_, outcome) = evaluate("alias.md", &text).unwrap();
+                let quantity = &outcome.runs[0].quantities[0];
+                let error = (quantity.value.unwrap() - 1.0).abs();
+                let held = quantity.bound.is_none_or(|bound| error <= bound);
+                let text = format!("{} {periods} {bound}: error {error:e} {quantity:?}", scheme.key);
+                assert!(held || quantity.grade >= Grade::Indicated, "{text}");
+            }
+        }
+    }
 }

@@ -80,7 +80,7 @@ pub enum Node {
     /// A function of two arguments.
     Binary(Binary, NodeId, NodeId),
     /// A power with a whole exponent from 2 to 64, by the multiplication chain of
-    /// [`power`](crate::arithmetic::elementary::power).
+    /// [`power`].
     Power(NodeId, u32),
     /// -1, 0 or 1 by the sign of `on`; the branch of its switch where that is locked.
     Sign {

@@ -161,7 +161,8 @@ fn sweep(parent: &Path, prefix: &str) {
     let Ok(entries) = fs::read_dir(parent) else { return };
     for entry in entries.flatten() {
         if entry.file_name().to_string_lossy().starts_with(prefix) {
-            let _ = fs::remove_dir_all(entry.path());
+            let is_folder = entry.file_type().is_ok_and(|kind| kind.is_dir());
+            let _ = if is_folder { fs::remove_dir_all(entry.path()) } else { fs::remove_file(entry.path()) };
         }
     }
 }
@@ -185,6 +186,7 @@ fn write_beside(place: &Path, bytes: &[u8]) -> io::Result<tempfile::NamedTempFil
         return Err(io::ErrorKind::InvalidInput.into());
     };
     let prefix = format!(".{name}{STAGED}");
+    sweep(parent, &prefix);
     let mut builder = Builder::new();
     builder.prefix(&prefix);
     #[cfg(unix)]

@@ -7,7 +7,7 @@ use crate::study::Text;
 use crate::study::fields::{Fields, expression, named, value};
 use crate::study::name::check_symbol;
 use crate::study::node::{Content, Node};
-use crate::unit::{Value, is_value, read_value};
+use crate::unit::{Value, is_value};
 
 /// A model as written.
 #[derive(Clone, Debug, PartialEq)]
@@ -173,11 +173,10 @@ fn state(name: Text, node: &Node, faults: &mut Faults) -> Option<StateEntry> {
 }
 
 fn start(node: &Node, what: &str, faults: &mut Faults) -> Option<Start> {
-    let text = expression(node, what, faults)?;
-    if is_value(&text.value) {
-        return read_value(&text.value, text.at, text.exact, faults).map(Start::Value);
+    if matches!(&node.content, Content::Scalar(scalar) if is_value(&scalar.text)) {
+        return value(node, what, faults).map(Start::Value);
     }
-    Some(Start::Expression(text))
+    expression(node, what, faults).map(Start::Expression)
 }
 
 fn derived(name: Text, node: &Node, faults: &mut Faults) -> Option<DerivedEntry> {
