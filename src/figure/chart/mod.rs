@@ -74,8 +74,8 @@ pub struct Band {
 
 /// Draws a chart as SVG.
 ///
-/// What lies beyond an axis is cut off, never drawn at its edge, and what is not finite is a gap. Lines of many points are thinned to what
-/// can be seen; their extremes stay.
+/// What lies beyond an axis is cut off, never drawn at its edge, and what is not finite is a gap. Lines of many
+/// points are thinned to what can be seen; their extremes stay.
 pub fn draw(chart: &Chart) -> String {
     draw_with(chart, &Extras::default())
 }
