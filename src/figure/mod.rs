@@ -5,8 +5,16 @@
 
 pub mod axis;
 pub mod chart;
+mod clip;
 pub mod convergence;
 pub mod digits;
+mod exact;
+mod frame;
+mod labels;
+#[cfg(test)]
+mod samples;
 pub mod stability;
 mod surface;
+pub mod table;
+mod ticks;
 mod width;

@@ -1,8 +1,9 @@
 //! The drawing surface: plotters' SVG backend on a canvas ten times as fine as the picture.
 //!
-//! plotters rounds to whole pixels and draws what lies outside an axis at its edge, so coordinates are scaled by
-//! ten, and lines are cut at the frame here. Colours stand in for styles while drawing and become CSS variables at
-//! the end, so that a page can give a dark and a print variant.
+//! plotters rounds to whole pixels, so coordinates are scaled by ten; it draws what lies outside an axis at its edge, so
+//! lines are cut beforehand. It knows no dashes and no CSS, so each ink is drawn in a colour that stands for it, and
+//! gets its looks at the end: the colour as an attribute, and a CSS variable over it with which a page can give a dark
+//! and a print variant.
 
 use plotters::backend::SVGBackend;
 use plotters::drawing::{DrawingArea, IntoDrawingArea};
@@ -14,13 +15,15 @@ use plotters::style::{Color, FontTransform, IntoFont, RGBColor, ShapeStyle, Text
 const FINE: f64 = 10.0;
 /// plotters writes a font size divided by this.
 const FONT: f64 = 1.24;
+/// Fonts of the system, in the order of liking.
+const FAMILY: &str = "system-ui, 'Segoe UI', Roboto, Helvetica, Arial, sans-serif";
 
-/// What a line, text or fill is; each is a colour and a CSS variable.
+/// What a line, text or fill is.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) enum Ink {
     /// Text and axes.
     Strong,
-    /// Lesser text.
+    /// Lesser lines.
     Soft,
     /// Major grid.
     Grid,
@@ -28,55 +31,103 @@ pub(super) enum Ink {
     Faint,
     /// A limit that a criterion sets.
     Limit,
+    /// Text on a limit, kept clear of lines below it.
+    LimitText,
+    /// Lesser text, kept clear of lines below it.
+    Note,
     /// A series, counted from 0.
     Series(usize),
+    /// A line in the colour of a series without its dashes.
+    Solid(usize),
 }
 
-/// Okabe & Ito (2008), "Color universal design": colours that readers with any colour vision tell apart, without
-/// the yellow, which is too light for lines.
-const SERIES: [(u8, u8, u8); 7] = [
-    (0, 114, 178),
-    (213, 94, 0),
-    (0, 158, 115),
-    (204, 121, 167),
-    (86, 180, 233),
-    (230, 159, 0),
-    (60, 60, 60),
+/// Okabe & Ito (2008), "Color universal design": colours that readers with any colour vision tell apart; black is
+/// kept for the axes, and the yellow is too light for lines.
+const SERIES: [(&str, &str); 7] = [
+    ("--chart-1", "#0072B2"),
+    ("--chart-2", "#D55E00"),
+    ("--chart-3", "#009E73"),
+    ("--chart-4", "#CC79A7"),
+    ("--chart-5", "#56B4E9"),
+    ("--chart-6", "#E69F00"),
+    ("--chart-7", "#3C3C3C"),
 ];
 
 /// Dashes of the series, in units of the picture.
 const DASHES: [&str; 7] = ["", "7 3", "2 2.5", "9 3 2 3", "12 4", "5 2 1.5 2 1.5 2", "1.2 3"];
 
-/// Number of series that differ in both colour and dash.
+/// Number of colours, and of dashes.
 pub(super) const STYLES: usize = SERIES.len();
 
+/// Most series that are told apart; further ones begin anew.
+const MOST_SERIES: usize = STYLES * STYLES;
+
 impl Ink {
+    /// The colour that stands for the ink on the surface: no two have the same.
     fn colour(self) -> RGBColor {
+        let (kind, i) = match self {
+            Ink::Strong => (1, 0),
+            Ink::Soft => (2, 0),
+            Ink::Grid => (3, 0),
+            Ink::Faint => (4, 0),
+            Ink::Limit => (5, 0),
+            Ink::LimitText => (6, 0),
+            Ink::Note => (7, 0),
+            Ink::Series(i) => (8, i % MOST_SERIES),
+            Ink::Solid(i) => (9, i % MOST_SERIES),
+        };
+        RGBColor(0xf7, kind, u8::try_from(i).unwrap_or(0))
+    }
+
+    /// CSS variable and colour.
+    fn looks(self) -> (&'static str, &'static str) {
         match self {
-            Ink::Strong => RGBColor(0x22, 0x22, 0x23),
-            Ink::Soft => RGBColor(0x55, 0x55, 0x56),
-            Ink::Grid => RGBColor(0xdd, 0xdd, 0xde),
-            Ink::Faint => RGBColor(0xf0, 0xf0, 0xf1),
-            Ink::Limit => RGBColor(0xb0, 0x1e, 0x2f),
-            Ink::Series(i) => {
-                let (r, g, b) = SERIES[i % STYLES];
-                RGBColor(r, g, b)
+            Ink::Strong => ("--chart-ink", "#222222"),
+            Ink::Soft | Ink::Note => ("--chart-soft", "#555555"),
+            Ink::Grid => ("--chart-grid", "#DDDDDD"),
+            Ink::Faint => ("--chart-faint", "#F0F0F0"),
+            Ink::Limit | Ink::LimitText => ("--chart-limit", "#B01E2F"),
+            Ink::Series(i) | Ink::Solid(i) => SERIES[i % STYLES],
+        }
+    }
+
+    /// Attributes of a line.
+    fn line_style(self) -> String {
+        let (variable, colour) = self.looks();
+        let dashes = match self {
+            // Series beyond the last colour have another dash.
+            Ink::Series(i) => DASHES[(i + i / STYLES) % STYLES],
+            Ink::Limit => "4 3",
+            _ => "",
+        };
+        let mut text = format!("stroke=\"{colour}\" style=\"stroke:var({variable},{colour})\"");
+        if !dashes.is_empty() {
+            let fine: Vec<String> = dashes
+                .split(' ')
+                .map(|part| (part.parse::<f64>().unwrap_or(1.0) * FINE).to_string())
+                .collect();
+            text = format!("{text} stroke-dasharray=\"{}\"", fine.join(" "));
+        }
+        text
+    }
+
+    /// Attributes of an area or a text.
+    fn fill_style(self) -> String {
+        let (variable, colour) = self.looks();
+        let halo = match self {
+            Ink::LimitText | Ink::Note => {
+                format!(";stroke:var(--paper,#FFFFFF);stroke-width:{};paint-order:stroke", 3.5 * FINE)
             }
-        }
+            _ => String::new(),
+        };
+        format!("fill=\"{colour}\" style=\"fill:var({variable},{colour}){halo}\"")
     }
-    fn hex(self) -> String {
-        let RGBColor(r, g, b) = self.colour();
-        format!("#{r:02X}{g:02X}{b:02X}")
-    }
-    fn variable(self) -> String {
-        match self {
-            Ink::Strong => "--chart-ink".to_owned(),
-            Ink::Soft => "--chart-soft".to_owned(),
-            Ink::Grid => "--chart-grid".to_owned(),
-            Ink::Faint => "--chart-faint".to_owned(),
-            Ink::Limit => "--chart-limit".to_owned(),
-            Ink::Series(i) => format!("--chart-{}", i % STYLES + 1),
-        }
+
+    fn all() -> Vec<Ink> {
+        let mut list =
+            vec![Ink::Strong, Ink::Soft, Ink::Grid, Ink::Faint, Ink::Limit, Ink::LimitText, Ink::Note];
+        list.extend((0..MOST_SERIES).flat_map(|i| [Ink::Series(i), Ink::Solid(i)]));
+        list
     }
 }
 
@@ -121,7 +172,7 @@ impl Surface {
         }
     }
     pub(super) fn text(&mut self, text: &str, at: (f64, f64), ink: Ink, size: f64, anchor: Anchor) {
-        self.marks.push(Mark::Text(text.to_owned(), at, ink, size, anchor));
+        self.marks.push(Mark::Text(printable(text), at, ink, size, anchor));
     }
     /// The marker of series `i`: a shape of its own for each.
     pub(super) fn marker(&mut self, i: usize, (x, y): (f64, f64), r: f64) {
@@ -156,8 +207,9 @@ impl Surface {
             // The backend writes to a string, which cannot fail.
             let _ = root.present();
         }
+        let id = escape(id);
         let header = format!(
-            "<svg class=\"chart\" viewBox=\"0 0 {w} {h}\" width=\"{pw}\" height=\"{ph}\" role=\"img\" aria-labelledby=\"{id}-title {id}-desc\" xmlns=\"http://www.w3.org/2000/svg\">\n<title id=\"{id}-title\">{}</title>\n<desc id=\"{id}-desc\">{}</desc>\n",
+            "<svg class=\"chart\" viewBox=\"0 0 {w} {h}\" width=\"{pw}\" height=\"{ph}\" role=\"img\" font-family=\"{FAMILY}\" stroke-linejoin=\"round\" aria-labelledby=\"{id}-title {id}-desc\" xmlns=\"http://www.w3.org/2000/svg\">\n<title id=\"{id}-title\">{}</title>\n<desc id=\"{id}-desc\">{}</desc>\n",
             escape(title),
             escape(description),
             w = self.width * FINE,
@@ -170,32 +222,20 @@ impl Surface {
     }
 }
 
-/// Replaces the colours by styles.
+/// Gives the inks their looks.
 fn style(svg: &str) -> String {
-    let mut text = svg.to_owned();
-    let mut inks = vec![Ink::Strong, Ink::Soft, Ink::Grid, Ink::Faint, Ink::Limit];
-    inks.extend((0..STYLES).map(Ink::Series));
-    for ink in inks {
-        let (hex, variable) = (ink.hex(), ink.variable());
-        let dash = match ink {
-            Ink::Series(i) if !DASHES[i].is_empty() => {
-                let fine: Vec<String> = DASHES[i]
-                    .split(' ')
-                    .map(|part| format!("{}", part.parse::<f64>().unwrap_or(1.0) * FINE))
-                    .collect();
-                format!(";stroke-dasharray:{}", fine.join(" "))
-            }
-            Ink::Limit => format!(";stroke-dasharray:{} {}", 4.0 * FINE, 3.0 * FINE),
-            _ => String::new(),
-        };
-        text = text
-            .replace(&format!("stroke=\"{hex}\""), &format!("style=\"stroke:var({variable},{hex}){dash}\""))
-            .replace(&format!("fill=\"{hex}\""), &format!("style=\"fill:var({variable},{hex})\""));
+    let mut text = svg.replace(" opacity=\"1\"", "");
+    for ink in Ink::all() {
+        let RGBColor(r, g, b) = ink.colour();
+        let hex = format!("#{r:02X}{g:02X}{b:02X}");
+        if text.contains(&hex) {
+            text = text
+                .replace(&format!("stroke=\"{hex}\""), &ink.line_style())
+                .replace(&format!("fill=\"{hex}\""), &ink.fill_style());
+        }
     }
-    text.replace(
-        "font-family=\"sans-serif\"",
-        "font-family=\"system-ui, 'Segoe UI', Roboto, Helvetica, Arial, sans-serif\"",
-    )
+    // The header names the font once.
+    text.replace(" font-family=\"sans-serif\"", "")
 }
 
 fn draw(root: &DrawingArea<SVGBackend<'_>, plotters::coord::Shift>, mark: &Mark) {
@@ -238,72 +278,15 @@ fn to_pixels(x: f64) -> u32 {
     x.round() as u32
 }
 
+/// Text without the characters that XML forbids.
+fn printable(text: &str) -> String {
+    text.chars()
+        .map(|c| if c.is_control() || matches!(c, '\u{fffe}' | '\u{ffff}') { ' ' } else { c })
+        .collect()
+}
+
 fn escape(text: &str) -> String {
-    text.replace('&', "&amp;").replace('<', "&lt;").replace('>', "&gt;")
-}
-
-/// The parts of a line inside the rectangle from `low` to `high`, split where it is not finite.
-///
-/// Source of the cutting: Liang & Barsky (1984), ACM Trans. Graph. 3, 1-22.
-pub(super) fn clip(points: &[(f64, f64)], low: (f64, f64), high: (f64, f64)) -> Vec<Vec<(f64, f64)>> {
-    let mut parts: Vec<Vec<(f64, f64)>> = Vec::new();
-    let mut open: Vec<(f64, f64)> = Vec::new();
-    for pair in points.windows(2) {
-        let (a, b) = (pair[0], pair[1]);
-        let finite = a.0.is_finite() && a.1.is_finite() && b.0.is_finite() && b.1.is_finite();
-        let Some((from, to)) = (if finite { segment(a, b, low, high) } else { None }) else {
-            parts.push(std::mem::take(&mut open));
-            continue;
-        };
-        if open.last() != Some(&from) {
-            parts.push(std::mem::take(&mut open));
-            open.push(from);
-        }
-        open.push(to);
-    }
-    parts.push(open);
-    parts.retain(|part| part.len() > 1);
-    parts
-}
-
-fn segment(
-    a: (f64, f64),
-    b: (f64, f64),
-    low: (f64, f64),
-    high: (f64, f64),
-) -> Option<((f64, f64), (f64, f64))> {
-    let (dx, dy) = (b.0 - a.0, b.1 - a.1);
-    let (mut enter, mut leave) = (0.0, 1.0);
-    for (p, q) in [(-dx, a.0 - low.0), (dx, high.0 - a.0), (-dy, a.1 - low.1), (dy, high.1 - a.1)] {
-        if p == 0.0 {
-            if q < 0.0 {
-                return None;
-            }
-            continue;
-        }
-        let r = q / p;
-        if p < 0.0 {
-            if r > leave {
-                return None;
-            }
-            enter = crate::arithmetic::larger(enter, r);
-        } else {
-            if r < enter {
-                return None;
-            }
-            leave = crate::arithmetic::smaller(leave, r);
-        }
-    }
-    let at = |s: f64| {
-        if s == 0.0 {
-            a
-        } else if s == 1.0 {
-            b
-        } else {
-            (a.0 + s * dx, a.1 + s * dy)
-        }
-    };
-    Some((at(enter), at(leave)))
+    printable(text).replace('&', "&amp;").replace('<', "&lt;").replace('>', "&gt;").replace('"', "&quot;")
 }
 
 #[cfg(test)]
@@ -311,10 +294,23 @@ mod tests {
     use super::*;
 
     #[test]
-    fn lines_are_cut_at_the_frame_and_at_gaps() {
-        let points = [(-1.0, 0.5), (0.5, 0.5), (0.5, f64::NAN), (0.6, 0.5), (0.6, 3.0)];
-        let parts = clip(&points, (0.0, 0.0), (1.0, 1.0));
-        assert_eq!(parts, vec![vec![(0.0, 0.5), (0.5, 0.5)], vec![(0.6, 0.5), (0.6, 1.0)]]);
-        assert!(clip(&[(2.0, 2.0), (3.0, 5.0)], (0.0, 0.0), (1.0, 1.0)).is_empty());
+    fn every_series_has_a_look_of_its_own() {
+        let mut looks: Vec<String> = (0..STYLES * STYLES).map(|i| Ink::Series(i).line_style()).collect();
+        looks.sort();
+        looks.dedup();
+        assert_eq!(looks.len(), STYLES * STYLES);
+        let mut dashes: Vec<&str> = DASHES.to_vec();
+        dashes.sort_unstable();
+        dashes.dedup();
+        assert_eq!(dashes.len(), STYLES);
+    }
+
+    #[test]
+    fn text_of_any_kind_is_text() {
+        let mut surface = Surface::new(100.0, 50.0);
+        surface.text("a < b & \"c\" \u{1} 'd'", (1.0, 2.0), Ink::Strong, 12.0, Anchor::Right);
+        let svg = surface.finish("x", "t <i> & \u{0}", "<script>");
+        assert!(svg.contains("a &lt; b &amp; &quot;c&quot;   &apos;d&apos;"), "{svg}");
+        assert!(!svg.contains("<script>") && !svg.contains("<i>") && !svg.contains('\u{0}'));
     }
 }
