@@ -16,6 +16,5 @@ mod samples;
 pub mod stability;
 mod surface;
 pub mod table;
-pub mod thin;
 mod ticks;
 mod width;

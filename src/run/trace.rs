@@ -1,7 +1,7 @@
 //! The points of a curve of a chart, thinned as the run goes by.
 
 use super::system::Values;
-use super::thin::{ColumnThinner, PathThinner};
+use super::thin::{PathThinner, Thinner};
 use super::{Accepted, Observer};
 use crate::plan::{CurvePlan, RunPlan};
 
@@ -9,15 +9,20 @@ use crate::plan::{CurvePlan, RunPlan};
 #[derive(Debug)]
 pub struct Trace {
     values: Values,
-    points: Thinner,
+    points: Points,
     y: Vec<f64>,
 }
 
 #[derive(Debug)]
-enum Thinner {
-    Columns(ColumnThinner),
+enum Points {
+    Columns(Thinner),
     Path(PathThinner),
 }
+
+/// Columns of a curve over time: about two a pixel of a wide chart.
+const COLUMNS: usize = 1440;
+/// Most points of a path.
+const MOST_POINTS: usize = 6000;
 
 /// Places inside a step at which the curve is sampled.
 const PLACES: [f64; 4] = [0.25, 0.5, 0.75, 1.0];
@@ -28,9 +33,9 @@ impl Trace {
         let mut trace = Trace {
             values: Values::new(&plan.graph, &[curve.against_node, curve.node], &plan.parameters),
             points: if curve.against == "t" {
-                Thinner::Columns(ColumnThinner::new(plan.from, plan.until))
+                Points::Columns(Thinner::new(plan.from, plan.until, COLUMNS))
             } else {
-                Thinner::Path(PathThinner::new())
+                Points::Path(PathThinner::new(MOST_POINTS))
             },
             y: plan.start.clone(),
         };
@@ -42,16 +47,16 @@ impl Trace {
         let mut out = [0.0; 2];
         self.values.at(t, &self.y, modes, &mut out);
         match &mut self.points {
-            Thinner::Columns(thinner) => thinner.push(out[0], out[1]),
-            Thinner::Path(thinner) => thinner.push(out[0], out[1]),
+            Points::Columns(thinner) => thinner.push(out[0], out[1]),
+            Points::Path(thinner) => thinner.push(out[0], out[1]),
         }
     }
 
     /// The points.
     pub fn finish(self) -> Vec<(f64, f64)> {
         match self.points {
-            Thinner::Columns(thinner) => thinner.finish(),
-            Thinner::Path(thinner) => thinner.finish(),
+            Points::Columns(thinner) => thinner.finish(),
+            Points::Path(thinner) => thinner.finish(),
         }
     }
 }

@@ -5,7 +5,7 @@ use super::clip::{Corners, Point, clip, clip_area, inside, segment};
 use super::frame::{BELOW, Frame, SMALL, TOP, left_room, most_labels};
 use super::labels::{self, Entry, Place};
 use super::surface::{Anchor, Ink, Surface};
-use super::thin::{PathThinner, thin};
+use crate::run::thin::{PathThinner, thin};
 use super::width::{fit, text_width};
 use crate::arithmetic::{larger, smaller};
 
