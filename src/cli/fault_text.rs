@@ -5,6 +5,7 @@ use super::find::Trouble;
 use super::status::Status;
 use crate::fault::{Failure, Faults, Sources, show};
 use crate::record::RecordError;
+use crate::report::ReportError;
 
 /// Why a study could not be issued.
 #[derive(Debug)]
@@ -24,6 +25,16 @@ pub enum IssueError {
 impl From<Failure> for IssueError {
     fn from(failure: Failure) -> Self {
         IssueError::Machine(failure)
+    }
+}
+
+impl From<ReportError> for IssueError {
+    fn from(error: ReportError) -> Self {
+        match error {
+            ReportError::Template(_) | ReportError::UnknownTemplate { .. } => IssueError::Template(error.to_string()),
+            ReportError::Missing(_) => IssueError::Defect(error.to_string()),
+            ReportError::Failure(failure) => IssueError::Machine(failure),
+        }
     }
 }
 
@@ -51,7 +62,7 @@ pub(super) fn tell(error: &IssueError, shown: &str, console: &Console) -> Status
             Status::Wrong
         }
         IssueError::Template(why) => {
-            console.fault(&format!("{shown}: a template is wrong: {why}"));
+            console.fault(&format!("{shown}: {why}"));
             Status::Wrong
         }
         IssueError::Machine(failure) => {

@@ -3,13 +3,15 @@
 use super::fault_text::IssueError;
 use super::find::Found;
 use super::pipeline::{self, Checked};
-use crate::bound::{Outcome, Quantity, RunOutcome, Steps};
+use crate::bound::{Grade, Outcome, Quantity, RunOutcome, Steps};
 use crate::fault::{Failure, Faults, Sources};
 use crate::model::Model;
 use crate::record::digest::{FileDigest, Was};
 use crate::record::json::StepControl;
 use crate::record::register::Entry;
-use crate::report::{self, RegisterEntry, ReportInputs, Templates};
+use crate::figure::digits;
+use crate::report::{self, RegisterEntry, ReportInputs, ShownText, Templates};
+use crate::study::block::criteria::Verdict;
 use crate::scheme::stability::Stability;
 use crate::scheme::{self, Scheme, control, order};
 use crate::study::Study;
@@ -100,28 +102,18 @@ fn wrong(faults: Faults, sources: Sources) -> IssueError {
 /// [`IssueError`] where the folder cannot be read or a template in it is wrong.
 pub fn templates(settings: &Settings) -> Result<(Templates, Vec<FileDigest>), IssueError> {
     let Some(folder) = &settings.templates else {
-        let built_in = Templates::built_in().map_err(|error| IssueError::Defect(error.to_string()))?;
-        return Ok((built_in, Vec::new()));
+        return Ok((Templates::builtin()?, Vec::new()));
     };
-    let failed = |cause| Failure::new(format!("cannot read the templates in {}", folder.display()), cause);
-    let mut names: Vec<_> = std::fs::read_dir(folder)
-        .and_then(Iterator::collect::<Result<Vec<_>, _>>)
-        .map_err(failed)?
-        .into_iter()
-        .filter(|entry| entry.path().is_file())
-        .map(|entry| entry.file_name().to_string_lossy().into_owned())
-        .filter(|name| !name.starts_with('.'))
-        .collect();
-    names.sort();
-    let mut files = Vec::new();
+    let templates = Templates::with_folder(folder)?;
     let mut digests = Vec::new();
-    for name in names {
-        let text = std::fs::read_to_string(folder.join(&name)).map_err(failed)?;
-        digests.push(FileDigest::of(Was::Read, format!("templates/{name}"), text.as_bytes()));
-        files.push((name, text));
+    for name in Templates::names() {
+        let path = folder.join(name);
+        if path.is_file() {
+            let bytes = std::fs::read(&path)
+                .map_err(|cause| Failure::new(format!("cannot read {}", path.display()), cause))?;
+            digests.push(FileDigest::of(Was::Read, format!("templates/{name}"), &bytes));
+        }
     }
-    let templates =
-        Templates::overlaid(folder, &files).map_err(|error| IssueError::Template(error.to_string()))?;
     Ok((templates, digests))
 }
 
@@ -132,31 +124,56 @@ pub fn templates(settings: &Settings) -> Result<(Templates, Vec<FileDigest>), Is
 /// [`IssueError`] where a template of the user's is wrong or cannot be read.
 pub fn report(executed: &Executed, files: &[FileDigest], settings: &Settings) -> Result<String, IssueError> {
     let (templates, _) = templates(settings)?;
-    let was = |was: Was| if was == Was::Read { "read" } else { "written" };
-    let digests: Vec<(String, String, String)> =
-        files.iter().map(|file| (file.path.clone(), was(file.was).to_owned(), file.sha256.clone())).collect();
+    let digests: Vec<(String, String)> =
+        files.iter().map(|file| (file.path.clone(), file.sha256.clone())).collect();
     let at = executed.study.front.title.at;
+    let file = executed.sources.file(at.file);
     let tool = format!("halfstep {}, numerics {}", env!("CARGO_PKG_VERSION"), crate::record::NUMERICS);
+    let figures = report::figures(&executed.study, &executed.models, &executed.outcome);
     let inputs = ReportInputs {
         study: &executed.study,
         models: &executed.models,
         outcome: &executed.outcome,
-        text: &executed.sources.file(at.file).text,
+        figures: &figures,
+        text: &file.text,
+        text_name: file.name.rsplit('/').next().unwrap_or(&file.name),
         digests: &digests,
         tool: &tool,
+        norm: NORM,
+        show: &show_text,
     };
-    report::compose(&inputs, &templates).map_err(|error| {
-        if settings.templates.is_some() {
-            IssueError::Template(error.to_string())
-        } else {
-            IssueError::Defect(error.to_string())
-        }
-    })
+    Ok(report::compose(&inputs, &templates)?)
+}
+
+/// How an adaptive run measures a local error, as a sentence.
+const NORM: &str = "The local error of a step is the largest, over the states, of the error estimate over the \
+    tolerance times the sum of the state's size and its typical scale.";
+
+/// A quantity as the report writes it.
+fn show_text(quantity: &Quantity) -> ShownText {
+    let unit = quantity.unit.as_deref();
+    let value = quantity.value.unwrap_or(0.0);
+    let shown = match quantity.bound {
+        Some(_) if quantity.whole => digits::shown(value, 0.0),
+        Some(bound) => digits::shown(value, bound),
+        None => digits::rough(value),
+    };
+    let joined = if quantity.whole || quantity.bound.is_none() { shown.value_text(unit) } else { shown.text(unit) };
+    ShownText {
+        value: shown.value_text(None),
+        bound: quantity.bound.map(|_| shown.bound_text(None)),
+        joined,
+        plain: shown.value_text(unit),
+    }
 }
 
 /// The text of a quantity as the report shows it: value, bound and unit.
 pub fn shown(quantity: &Quantity) -> String {
-    report::shown(quantity)
+    match (quantity.value, quantity.bound) {
+        (Some(_), Some(_)) => show_text(quantity).joined,
+        (Some(_), None) => format!("about {}, without a bound", show_text(quantity).joined),
+        (None, _) => "no value".to_owned(),
+    }
 }
 
 /// How an adaptive run chose its steps; `None` for a fixed step.
@@ -184,27 +201,43 @@ pub fn step_control(run: &RunOutcome) -> Option<StepControl> {
 /// [`IssueError`] where the template is wrong.
 pub fn register(entries: &[Entry], settings: &Settings) -> Result<String, IssueError> {
     let (templates, _) = templates(settings)?;
-    let list: Vec<RegisterEntry> = entries
-        .iter()
-        .map(|entry| {
-            let count = |verdict: &str| entry.verdicts.iter().filter(|found| *found == verdict).count();
-            let weakest = ["unbounded", "indicated", "converged", "corroborated"]
-                .into_iter()
-                .find(|grade| entry.grades.iter().any(|found| found == grade));
-            RegisterEntry {
-                name: entry.name.clone(),
-                title: entry.title.clone(),
-                number: entry.number.clone().unwrap_or_default(),
-                revision: entry.revision.clone().unwrap_or_default(),
-                date: entry.date.clone().unwrap_or_default(),
-                met: count("met"),
-                not_met: count("not met"),
-                undecided: count("undecided"),
-                weakest: weakest.unwrap_or_default().to_owned(),
-            }
-        })
-        .collect();
-    report::compose_register(&list, &templates).map_err(|error| IssueError::Template(error.to_string()))
+    let list: Vec<RegisterEntry> = entries.iter().map(register_entry).collect();
+    Ok(report::compose_register(&list, &templates)?)
+}
+
+fn register_entry(entry: &Entry) -> RegisterEntry {
+    let verdicts = [Verdict::Met, Verdict::NotMet, Verdict::Undecided].map(|verdict| {
+        let is = |found: &&(String, bool)| found.0 == verdict.words();
+        let count = entry.verdicts.iter().filter(is).count();
+        (verdict, count, entry.verdicts.iter().filter(is).filter(|found| found.1).count())
+    });
+    let weakest = [Grade::Unbounded, Grade::Indicated, Grade::Converged, Grade::Corroborated]
+        .into_iter()
+        .find(|grade| entry.grades.iter().any(|found| found == grade.word()));
+    RegisterEntry {
+        folder: entry.name.rsplit_once('/').map_or("", |(folder, _)| folder).to_owned(),
+        number: entry.number.clone(),
+        title: entry.title.clone(),
+        revision: entry.revision.clone(),
+        date: entry.date.clone(),
+        verdicts: verdicts.to_vec(),
+        weakest,
+        link: format!("{}/report.html", percent(&entry.name)),
+    }
+}
+
+/// A path as part of an address: all but unreserved characters and `/` percent-encoded (RFC 3986, 2.1).
+fn percent(path: &str) -> String {
+    let mut text = String::new();
+    for byte in path.bytes() {
+        if byte.is_ascii_alphanumeric() || b"-._~/".contains(&byte) {
+            text.push(char::from(byte));
+        } else {
+            text.push('%');
+            text.extend([byte >> 4, byte & 15].map(|half| char::from(b"0123456789ABCDEF"[usize::from(half)])));
+        }
+    }
+    text
 }
 
 /// All schemes in the order in which they are listed.

@@ -18,8 +18,8 @@ pub struct Entry {
     pub revision: Option<String>,
     /// `date`
     pub date: Option<String>,
-    /// The verdicts of its criteria, in words.
-    pub verdicts: Vec<String>,
+    /// The verdicts of its criteria, in words, each with whether the study expects it.
+    pub verdicts: Vec<(String, bool)>,
     /// The grades of its quantities, in words.
     pub grades: Vec<String>,
 }
@@ -70,6 +70,12 @@ fn entry(name: &str, bytes: &[u8]) -> Option<Entry> {
     #[derive(Deserialize)]
     struct Criterion {
         verdict: String,
+        #[serde(default)]
+        expect: Option<Expect>,
+    }
+    #[derive(Deserialize)]
+    struct Expect {
+        verdict: String,
     }
     #[derive(Deserialize)]
     struct Quantity {
@@ -82,7 +88,14 @@ fn entry(name: &str, bytes: &[u8]) -> Option<Entry> {
         number: record.study.number,
         revision: record.study.revision,
         date: record.study.date,
-        verdicts: record.criteria.into_iter().map(|criterion| criterion.verdict).collect(),
+        verdicts: record
+            .criteria
+            .into_iter()
+            .map(|criterion| {
+                let expected = criterion.expect.is_some_and(|expect| expect.verdict == criterion.verdict);
+                (criterion.verdict, expected)
+            })
+            .collect(),
         grades: record.quantities.into_iter().map(|quantity| quantity.grade).collect(),
     })
 }
@@ -110,7 +123,7 @@ mod tests {
         let entries = collect(out.path()).unwrap();
         let names: Vec<_> = entries.iter().map(|entry| (entry.name.as_str(), entry.title.as_str())).collect();
         assert_eq!(names, [("a/deep", "first"), ("b", "second")]);
-        assert_eq!(entries[0].verdicts, ["met"]);
+        assert_eq!(entries[0].verdicts, [("met".to_owned(), false)]);
         assert_eq!(entries[0].grades, ["converged"]);
     }
 }

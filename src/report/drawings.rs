@@ -1,10 +1,12 @@
-//! The drawings of a report: charts of the study, and the convergence and stability charts of its runs.
+//! Draws the charts of a study, and the convergence and stability charts of its runs.
 
 use crate::bound::{Curve, Grade, Outcome, Quantity, RowColumn, RunOutcome};
 use crate::figure::chart::{self, Chart, Series};
 use crate::figure::convergence::{self, Errors};
 use crate::figure::{digits, stability};
 use crate::scheme::stability::Stability;
+use super::{ChartFigure, Figures, RunFigures, tables};
+use crate::model::Model;
 use crate::study::Study;
 use crate::study::block::chart::{ChartBlock, Shows, Trace};
 
@@ -13,18 +15,38 @@ const OUTLINE: u32 = 240;
 /// Most quantities in the convergence chart of a run.
 const MOST_QUANTITIES: usize = 7;
 
-/// A drawn chart.
-#[derive(Clone, Debug, PartialEq, Eq)]
-pub(super) struct Drawing {
-    /// The SVG.
-    pub svg: String,
-    /// What the reader should know of the numbers in it: bounds of the curves, points left out.
-    pub note: String,
+/// A drawn chart: the SVG, and what the reader should know of the numbers in it.
+struct Drawing {
+    svg: String,
+    note: String,
 }
 
-/// Draws the charts of a study, in the order of its blocks. `None` where there is nothing to draw.
-pub(super) fn charts(study: &Study, outcome: &Outcome) -> Vec<Option<Drawing>> {
-    study.blocks.charts.iter().map(|block| draw(study, block, outcome)).collect()
+/// All figures of a study, from what came of its runs.
+pub fn figures(study: &Study, models: &[Model], outcome: &Outcome) -> Figures {
+    let charts = study.blocks.charts.iter().map(|block| {
+        let drawing = draw(study, block, outcome).unwrap_or_else(|| Drawing {
+            svg: String::new(),
+            note: "nothing can be drawn: see the ledger".to_owned(),
+        });
+        figure(&block.name.value, title(block), drawing)
+    });
+    let runs = outcome.runs.iter().map(|run| RunFigures {
+        convergence: run_convergence(run).map(|drawing| {
+            let caption = "Error of each quantity against the largest step of its mesh. The thin line has the slope of the scheme's order".to_owned();
+            figure(&run.name, caption, drawing)
+        }),
+        stability: Some(figure(
+            &run.name,
+            format!("Region of absolute stability of {}, with step times eigenvalues of the Jacobian along the run", run.scheme.name),
+            run_stability(run),
+        )),
+    });
+    Figures { charts: charts.collect(), tables: tables::tables(study, models, outcome), runs: runs.collect() }
+}
+
+fn figure(name: &str, caption: String, drawing: Drawing) -> ChartFigure {
+    let note = (!drawing.note.is_empty()).then_some(drawing.note);
+    ChartFigure { name: name.to_owned(), svg: drawing.svg, caption, note }
 }
 
 fn draw(study: &Study, block: &ChartBlock, outcome: &Outcome) -> Option<Drawing> {
@@ -50,7 +72,7 @@ fn draw(study: &Study, block: &ChartBlock, outcome: &Outcome) -> Option<Drawing>
 }
 
 /// The title of a chart, or its name where it has none.
-pub(super) fn title(block: &ChartBlock) -> String {
+fn title(block: &ChartBlock) -> String {
     block.title.as_ref().map_or_else(|| block.name.value.clone(), |title| title.value.clone())
 }
 
@@ -201,7 +223,7 @@ fn curve_note(label: &str, curve: &Curve) -> String {
 }
 
 /// The convergence chart of a run's quantities.
-pub(super) fn run_convergence(run: &RunOutcome) -> Option<Drawing> {
+fn run_convergence(run: &RunOutcome) -> Option<Drawing> {
     let list: Vec<(&RunOutcome, &Quantity, String)> = run
         .quantities
         .iter()
@@ -251,7 +273,7 @@ fn convergence_chart(id: &str, title: &str, list: &[(&RunOutcome, &Quantity, Str
 }
 
 /// The stability chart of a run.
-pub(super) fn run_stability(run: &RunOutcome) -> Drawing {
+fn run_stability(run: &RunOutcome) -> Drawing {
     let title = format!("Stability region of {} and run {}", run.scheme.name, run.name);
     stability_chart(&format!("stability-{}", run.name), &title, run)
 }

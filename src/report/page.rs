@@ -1,159 +1,145 @@
-//! Composes the page.
+//! The whole page: what enters it, and the order in which its parts are made.
 
-use super::drawings;
-use super::ledger::ledger;
-use super::prose::Prose;
-use super::templates::{TemplateError, Templates};
-use super::view::{DigestView, Field, InputView, InputsView, LineView, PageView, VerdictView};
-use crate::bound::{Grade, Outcome};
+use super::anchor::Ids;
+use super::citation::Citations;
+use super::view::{ContentsEntry, LineLink, ReportView};
+use super::{Figures, ReportError, Show, Templates, annex, ledger, prose, summary};
+use crate::bound::Outcome;
+use crate::fault::Span;
 use crate::model::Model;
-use crate::study::Study;
-use crate::study::block::criteria::Verdict;
-use crate::study::block::model::{ParameterEntry, Start};
+use crate::study::block::Blocks;
+use crate::study::{BlockRef, Part, Study};
 
-/// All that a report is made of.
-#[derive(Clone, Copy, Debug)]
+/// What a report is made of.
+#[derive(Clone, Copy)]
 pub struct ReportInputs<'a> {
     /// The study.
     pub study: &'a Study,
     /// Its models, in the order of its blocks.
     pub models: &'a [Model],
-    /// What came of its runs.
+    /// What came of it; its runs in the order of the blocks.
     pub outcome: &'a Outcome,
-    /// Its text.
+    /// Its charts and tables.
+    pub figures: &'a Figures,
+    /// The text of the study's file.
     pub text: &'a str,
-    /// Files with their digests: path, `read` or `written`, SHA-256.
-    pub digests: &'a [(String, String, String)],
-    /// Name and version of the tool, and the version of the numerical definitions.
+    /// The name of that file, as the report should show it.
+    pub text_name: &'a str,
+    /// Path and SHA-256 of every file that the report rests on.
+    pub digests: &'a [(String, String)],
+    /// Which tool at which version, with the version of its numerical definitions.
     pub tool: &'a str,
+    /// How an adaptive run measures a local error against its tolerance, as a sentence.
+    pub norm: &'a str,
+    /// How a quantity is written.
+    pub show: Show<'a>,
 }
 
-/// Writes the report as HTML.
+/// The report as one HTML page.
 ///
 /// # Errors
-/// [`TemplateError`] where a template cannot be filled.
-pub fn compose(inputs: &ReportInputs<'_>, templates: &Templates) -> Result<String, TemplateError> {
-    let ReportInputs { study, models, outcome, .. } = *inputs;
-    let prose = Prose { study, models, outcome, templates, charts: drawings::charts(study, outcome) };
-    let (body, cites) = prose.render()?;
-    let cites_of = |name: &str| cites.get(name).cloned().unwrap_or_default();
-    let labels = [
-        ("number", "Number"),
-        ("revision", "Revision"),
-        ("date", "Date"),
-        ("client", "Client"),
-        ("prepared", "Prepared"),
-        ("checked", "Checked"),
-        ("approved", "Approved"),
-    ];
-    let fields = labels.iter().filter_map(|(key, label)| {
-        Some(Field { label: (*label).to_owned(), text: study.front.get(key)?.to_owned() })
-    });
-    let view = PageView {
-        title: study.front.title.value.clone(),
-        fields: fields.collect(),
-        caution: study.front.get("caution").map(str::to_owned),
-        verdict: verdict(outcome),
-        body,
-        ledger: outcome.runs.iter().map(|run| ledger(run, &models[run.model], &cites_of)).collect(),
-        inputs: models.iter().map(inputs_of).collect(),
-        lines: inputs
-            .text
-            .lines()
-            .enumerate()
-            .map(|(i, line)| LineView { number: i + 1, text: line.to_owned() })
-            .collect(),
-        digests: inputs
-            .digests
-            .iter()
-            .map(|(path, was, sha256)| DigestView {
-                path: path.clone(),
-                was: was.clone(),
-                sha256: sha256.clone(),
-            })
-            .collect(),
+/// [`ReportError::Template`] where a template of the user's asks for what is not there,
+/// [`ReportError::Missing`] where the inputs do not belong together.
+pub fn compose(inputs: &ReportInputs<'_>, templates: &Templates) -> Result<String, ReportError> {
+    let mut page = Page::new(inputs, templates)?;
+    let mut citations = Citations::new(inputs.outcome, &mut page.ids);
+    // The body comes first: the ledger leads back to the places that it makes.
+    let body = prose::body(&mut page, &mut citations)?;
+    let mut contents = body.contents;
+    contents.extend(
+        ANNEXES.iter().map(|(id, text)| ContentsEntry { id: (*id).to_owned(), text: (*text).to_owned() }),
+    );
+    let view = ReportView {
+        sheet: summary::sheet(&inputs.study.front),
+        verdict: summary::verdict(inputs.outcome, &citations)?,
+        contents,
+        body: body.html,
+        ledger: ledger::ledger(&page, &citations)?,
+        convergence: annex::convergence(&mut page, &citations)?,
+        inputs: annex::inputs(&page)?,
+        study_text: annex::study_text(&page),
+        digests: annex::digests(&page),
         tool: inputs.tool.to_owned(),
     };
     templates.render("report.html", &view)
 }
 
-fn verdict(outcome: &Outcome) -> VerdictView {
-    let count = |verdict| outcome.criteria.iter().filter(|criterion| criterion.verdict == verdict).count();
-    let weakest = outcome.weakest_grade();
-    VerdictView {
-        total: outcome.criteria.len(),
-        met: count(Verdict::Met),
-        not_met: count(Verdict::NotMet),
-        undecided: count(Verdict::Undecided),
-        out_of_order: outcome.criteria.iter().filter(|criterion| !criterion.is_in_order()).count(),
-        expected: outcome
-            .criteria
-            .iter()
-            .filter(|criterion| criterion.verdict != Verdict::Met && criterion.is_in_order())
-            .count(),
-        quantities: outcome.runs.iter().map(|run| run.quantities.len()).sum(),
-        weakest: weakest.map_or_else(String::new, |grade| grade.word().to_owned()),
-        meaning: weakest.map_or_else(String::new, |grade| meaning(grade).to_owned()),
-    }
+/// A page in the making.
+pub(super) struct Page<'a> {
+    pub(super) inputs: &'a ReportInputs<'a>,
+    pub(super) templates: &'a Templates,
+    pub(super) ids: Ids,
+    /// The id of each run's part of the ledger.
+    pub(super) run_ids: Vec<String>,
+    /// The id of each model's block, where the body shows it.
+    pub(super) model_ids: Vec<Option<String>>,
+    /// The id of each line of the study's text.
+    pub(super) line_ids: Vec<String>,
+    /// The first byte of each of them.
+    line_starts: Vec<usize>,
 }
 
-/// What a grade means, for a reader who has not met it.
-fn meaning(grade: Grade) -> &'static str {
-    match grade {
-        Grade::Corroborated => "every bound rests on two independent estimates that agree",
-        Grade::Converged => {
-            "every bound rests on three meshes that converge at the order of the scheme, or agree to rounding"
+impl<'a> Page<'a> {
+    fn new(inputs: &'a ReportInputs<'a>, templates: &'a Templates) -> Result<Self, ReportError> {
+        agree(inputs)?;
+        let mut ids = Ids::new();
+        let figures = inputs.figures;
+        let of_runs = figures.runs.iter().flat_map(|run| run.convergence.iter().chain(&run.stability));
+        for chart in figures.charts.iter().chain(of_runs) {
+            ids.reserve_of(&chart.svg);
         }
-        Grade::Indicated => {
-            "some bounds are wide indications: the meshes approach each other, but not as theory says"
+        let mut start = 0;
+        let mut line_starts = Vec::new();
+        let mut line_ids = Vec::new();
+        for (i, line) in inputs.text.split_inclusive('\n').enumerate() {
+            line_starts.push(start);
+            line_ids.push(ids.take(&format!("line-{}", i + 1)));
+            start += line.len();
         }
-        Grade::Unbounded => "some numbers have no bound: the ledger says why",
+        let run_ids =
+            inputs.outcome.runs.iter().map(|run| ids.take(&format!("ledger-{}", run.name))).collect();
+        let mut model_ids = Vec::new();
+        for (i, model) in inputs.models.iter().enumerate() {
+            let shown = inputs.study.body.contains(&Part::Block(BlockRef::Model(i)));
+            model_ids.push(shown.then(|| ids.take(&format!("model-{}", model.name.value))));
+        }
+        Ok(Page { inputs, templates, ids, run_ids, model_ids, line_ids, line_starts })
+    }
+
+    /// The line of the study where `span` starts.
+    pub(super) fn line(&self, span: Span) -> Option<LineLink> {
+        if span.file != self.inputs.study.front.title.at.file || span.start > self.inputs.text.len() {
+            return None;
+        }
+        let number = self.line_starts.partition_point(|start| *start <= span.start);
+        let id = self.line_ids.get(number.checked_sub(1)?)?;
+        Some(LineLink { number, id: id.clone() })
     }
 }
 
-fn inputs_of(model: &Model) -> InputsView {
-    let mut rows: Vec<InputView> = model.parameters.iter().map(parameter).collect();
-    for state in &model.states {
-        let text =
-            |text: &Option<crate::study::Text>| text.as_ref().map_or_else(String::new, |t| t.value.clone());
-        rows.push(InputView {
-            name: state.entry.name.value.clone(),
-            kind: "start value".to_owned(),
-            value: match &state.entry.start {
-                Start::Value(value) => value.digits.clone(),
-                Start::Expression(text) => text.value.clone(),
-            },
-            unit: state.unit.clone().unwrap_or_default(),
-            uncertainty: String::new(),
-            source: match (&state.entry.start, &state.entry.source) {
-                (Start::Expression(_), None) => "from parameters".to_owned(),
-                (_, source) => text(source),
-            },
-            about: text(&state.entry.about),
-        });
+/// The lists that are read side by side have the same lengths.
+fn agree(inputs: &ReportInputs<'_>) -> Result<(), ReportError> {
+    let Blocks { models, runs, charts, tables, criteria } = &inputs.study.blocks;
+    let pairs = [
+        ("models", models.len(), inputs.models.len()),
+        ("runs", runs.len(), inputs.outcome.runs.len()),
+        ("charts", charts.len(), inputs.figures.charts.len()),
+        ("tables", tables.len(), inputs.figures.tables.len()),
+        ("criteria", criteria.iter().map(|block| block.criteria.len()).sum(), inputs.outcome.criteria.len()),
+    ];
+    match pairs.into_iter().find(|(_, written, made)| written != made) {
+        None => Ok(()),
+        Some((what, written, made)) => {
+            Err(ReportError::Missing(format!("some {what}: the study has {written}, its outcome {made}")))
+        }
     }
-    InputsView { model: model.name.value.clone(), rows }
 }
 
-fn parameter(entry: &ParameterEntry) -> InputView {
-    let text =
-        |text: &Option<crate::study::Text>| text.as_ref().map_or_else(String::new, |t| t.value.clone());
-    let with_unit = |value: &crate::unit::Value| match &value.unit {
-        Some(unit) => format!("{} {unit}", value.digits),
-        None => value.digits.clone(),
-    };
-    let uncertainty = match (&entry.plusminus, &entry.sd) {
-        (Some(half), _) => format!("± {} (uniform)", with_unit(half)),
-        (None, Some(sd)) => format!("standard {}", with_unit(sd)),
-        _ => String::new(),
-    };
-    InputView {
-        name: entry.name.value.clone(),
-        kind: "parameter".to_owned(),
-        value: entry.value.digits.clone(),
-        unit: entry.value.unit.clone().unwrap_or_default(),
-        uncertainty,
-        source: text(&entry.source),
-        about: text(&entry.about),
-    }
-}
+/// The annexes, with the ids that the templates give them.
+const ANNEXES: [(&str, &str); 5] = [
+    ("ledger", "Annex A: Ledger"),
+    ("convergence", "Annex B: Convergence and stability"),
+    ("inputs", "Annex C: Inputs"),
+    ("study-text", "Annex D: Study text"),
+    ("digests", "Annex E: Digests"),
+];

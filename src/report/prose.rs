@@ -1,315 +1,318 @@
-//! The prose of a study as HTML: Markdown by pulldown-cmark, quoted quantities and blocks by templates.
+//! The body of a study as markup: Markdown by `pulldown-cmark`, quotes and blocks by the templates.
+//!
+//! The study has been read with raw HTML and unsafe links refused; here both are made harmless once more, so
+//! that no slip of a reader can put them into a page. Headings are renumbered below the title of the page so
+//! that no level is left out; footnotes and tables go through templates.
 
-use std::collections::BTreeMap;
+use super::block::{Numbering, quote, render};
+use super::citation::Citations;
+use super::page::Page;
+use super::view::ContentsEntry;
+use super::{ReportError, block};
+use crate::study::{Part, Quote};
+use pulldown_cmark::{CowStr, Event, HeadingLevel, LinkType, Tag, TagEnd};
+use std::collections::{BTreeMap, VecDeque};
 
-use pulldown_cmark::{CowStr, Event, HeadingLevel, Tag, TagEnd, html};
-
-use super::drawings::{self, Drawing};
-use super::ledger::{line, overrides, quantity_id, span_text, steps_text};
-use super::number::{align, parts, shown, split, value_alone};
-use super::templates::{TemplateError, Templates};
-use super::view::{
-    CellView, ChartView, CriteriaView, CriterionView, EquationView, HeadView, ModelView, QuoteView, RunView,
-    StateView, TableView,
-};
-use crate::arithmetic::larger;
-use crate::bound::{Grade, Outcome, RowColumn};
-use crate::figure::digits::{MOST_DIGITS, decade, rough, shown_at, size};
-use crate::model::Model;
-use crate::study::block::chart::ChartBlock;
-use crate::study::block::criteria::{CriteriaBlock, Verdict};
-use crate::study::block::model::Start;
-use crate::study::block::table::{Lists, TableBlock};
-use crate::study::{BlockRef, Part, Study};
-
-/// Most rows of a run that a table shows; all stand in the data file.
-const MOST_ROWS: usize = 200;
-
-/// The places that quote each quantity, by its name.
-pub(super) type Cites = BTreeMap<String, Vec<String>>;
-
-/// Renders the prose of a study.
-pub(super) struct Prose<'a> {
-    pub(super) study: &'a Study,
-    pub(super) models: &'a [Model],
-    pub(super) outcome: &'a Outcome,
-    pub(super) templates: &'a Templates,
-    pub(super) charts: Vec<Option<Drawing>>,
+/// The body of a report.
+pub(super) struct Body {
+    /// Its markup.
+    pub(super) html: String,
+    /// Its headings of the first level.
+    pub(super) contents: Vec<ContentsEntry>,
 }
 
-impl Prose<'_> {
-    /// The body as HTML, and the places that quote each quantity.
-    pub(super) fn render(&self) -> Result<(String, Cites), TemplateError> {
-        let mut cites = Cites::new();
-        let mut events: Vec<Event<'_>> = Vec::new();
-        let (mut figures, mut tables, mut criteria) = (0, 0, 0);
-        for part in &self.study.body {
-            match part {
-                Part::Markdown(event) => events.push(lower_heading(event.clone())),
-                Part::Quote(quote) => {
-                    let name = &quote.quantity.value;
-                    let html = self.quote(name, quote.plain, &mut cites)?;
-                    events.push(Event::InlineHtml(CowStr::from(html)));
-                }
-                Part::Block(block) => {
-                    let html = match *block {
-                        BlockRef::Model(i) => self.model(i)?,
-                        BlockRef::Run(i) => self.run(i)?,
-                        BlockRef::Chart(i) => {
-                            figures += 1;
-                            self.chart(i, figures)?
-                        }
-                        BlockRef::Table(i) => {
-                            tables += 1;
-                            self.table(&self.study.blocks.tables[i], tables)?
-                        }
-                        BlockRef::Criteria(i) => {
-                            let block = &self.study.blocks.criteria[i];
-                            let html = self.criteria(block, criteria)?;
-                            criteria += block.criteria.len();
-                            html
-                        }
-                    };
-                    events.push(Event::Html(CowStr::from(html)));
-                }
+/// Prose, quotes and blocks as markup.
+pub(super) fn body(page: &mut Page<'_>, citations: &mut Citations) -> Result<Body, ReportError> {
+    let headings = headings(page)?;
+    let contents = headings
+        .iter()
+        .filter(|heading| heading.level == HeadingLevel::H2)
+        .map(|heading| ContentsEntry { id: heading.id.clone(), text: heading.text.clone() })
+        .collect();
+    let targets = headings.iter().map(|heading| (heading.slug.clone(), heading.id.clone())).collect();
+    let mut writer = Writer {
+        page,
+        citations,
+        headings: headings.into(),
+        targets,
+        stack: vec![(Frame::Body, Vec::new())],
+        kept_links: Vec::new(),
+        footnotes: BTreeMap::new(),
+        defined: Vec::new(),
+        numbering: Numbering::default(),
+    };
+    let parts = &writer.page.inputs.study.body;
+    for part in parts {
+        match part {
+            Part::Markdown(event) => writer.markdown(event.clone())?,
+            Part::Quote(quote) => writer.quote(quote)?,
+            Part::Block(which) => {
+                let html = render(*which, writer.page, writer.citations, &mut writer.numbering)?;
+                writer.push(Event::Html(format!("\n{html}\n").into()));
             }
         }
-        let mut body = String::new();
-        html::push_html(&mut body, events.into_iter());
-        Ok((body, cites))
     }
+    let events = writer.stack.pop().map(|(_, events)| events).unwrap_or_default();
+    Ok(Body { html: to_html(events), contents })
+}
 
-    fn quote(&self, name: &str, plain: bool, cites: &mut Cites) -> Result<String, TemplateError> {
-        let Some((run, quantity)) = self.outcome.quantity(name) else {
-            return Ok(String::new());
-        };
-        let list = cites.entry(name.to_owned()).or_default();
-        let target = quantity_id(&run.name, &quantity.name);
-        let id = format!("cite-{}-{}", target, list.len() + 1);
-        list.push(id.clone());
-        let html = self.templates.render(
-            "quote.html",
-            &QuoteView {
-                id,
-                target,
-                text: if plain { value_alone(quantity) } else { shown(quantity) },
-                grade: quantity.grade.word().to_owned(),
-                weak: quantity.grade >= Grade::Indicated,
-            },
-        )?;
-        // The end of the template's file is no blank in the sentence.
-        Ok(html.trim().to_owned())
-    }
+/// A heading as the page has it.
+struct Heading {
+    level: HeadingLevel,
+    id: String,
+    text: String,
+    slug: String,
+}
 
-    fn model(&self, i: usize) -> Result<String, TemplateError> {
-        let model = &self.models[i];
-        let text =
-            |text: &Option<crate::study::Text>| text.as_ref().map_or_else(String::new, |t| t.value.clone());
-        let equation = |expression: &crate::model::Expression| EquationView {
-            name: expression.name.value.clone(),
-            text: expression.text.value.clone(),
-            unit: expression.unit.clone().unwrap_or_default(),
-            about: text(&expression.about),
-        };
-        self.templates.render(
-            "model.html",
-            &ModelView {
-                name: model.name.value.clone(),
-                about: text(&model.about),
-                states: model
-                    .states
-                    .iter()
-                    .map(|state| StateView {
-                        name: state.entry.name.value.clone(),
-                        rate: state.rate_text.value.clone(),
-                        start: match &state.entry.start {
-                            Start::Value(value) => value.digits.clone(),
-                            Start::Expression(text) => text.value.clone(),
-                        },
-                        unit: state.unit.clone().unwrap_or_default(),
-                        about: text(&state.entry.about),
-                        exact: state.exact.as_ref().map_or_else(String::new, |(text, _)| text.value.clone()),
-                    })
-                    .collect(),
-                derived: model.derived.iter().map(equation).collect(),
-                invariants: model.invariants.iter().map(equation).collect(),
-            },
-        )
-    }
-
-    fn run(&self, i: usize) -> Result<String, TemplateError> {
-        let run = &self.outcome.runs[i];
-        let weakest = run.quantities.iter().map(|quantity| quantity.grade).max();
-        self.templates.render(
-            "run.html",
-            &RunView {
-                name: run.name.clone(),
-                id: format!("run-{}", run.name),
-                model: self.models[run.model].name.value.clone(),
-                scheme: run.scheme.name.to_owned(),
-                steps: steps_text(run),
-                span: span_text(run),
-                weakest: weakest.map_or_else(String::new, |grade| grade.word().to_owned()),
-                overrides: overrides(run),
-            },
-        )
-    }
-
-    fn chart(&self, i: usize, number: usize) -> Result<String, TemplateError> {
-        let block: &ChartBlock = &self.study.blocks.charts[i];
-        let (svg, note) = match &self.charts[i] {
-            Some(drawing) => (drawing.svg.clone(), drawing.note.clone()),
-            None => (String::new(), "nothing can be drawn: see the ledger".to_owned()),
-        };
-        let id = format!("figure-{}", block.name.value);
-        self.templates
-            .render("chart.html", &ChartView { id, number, title: drawings::title(block), svg, note })
-    }
-
-    fn table(&self, block: &TableBlock, number: usize) -> Result<String, TemplateError> {
-        let title =
-            block.title.as_ref().map_or_else(|| block.name.value.clone(), |title| title.value.clone());
-        let mut view = TableView {
-            id: format!("table-{}", block.name.value),
-            number,
-            title,
-            quantities: Vec::new(),
-            heads: Vec::new(),
-            rows: Vec::new(),
-        };
-        match &block.lists {
-            Lists::Quantities(names) => {
-                let found = names.iter().filter_map(|name| self.outcome.quantity(&name.value));
-                view.quantities = found.map(|(run, quantity)| line(run, quantity, &|_| Vec::new())).collect();
-                let (mut values, mut bounds) = (Vec::new(), Vec::new());
-                for quantity in &mut view.quantities {
-                    values.push(&mut quantity.value);
-                    bounds.push(&mut quantity.bound);
+/// All headings in their order. A level is never more than one below that of the heading before.
+fn headings(page: &mut Page<'_>) -> Result<Vec<Heading>, ReportError> {
+    let mut found = Vec::new();
+    let mut open: Option<(HeadingLevel, String)> = None;
+    let mut above: Vec<HeadingLevel> = Vec::new();
+    let inputs = page.inputs;
+    for part in &inputs.study.body {
+        match part {
+            Part::Markdown(Event::Start(Tag::Heading { level, .. })) => open = Some((*level, String::new())),
+            Part::Markdown(Event::End(TagEnd::Heading(_))) => {
+                let Some((level, text)) = open.take() else { continue };
+                while above.last().is_some_and(|last| *last >= level) {
+                    above.pop();
                 }
-                align(&mut values);
-                align(&mut bounds);
-            }
-            Lists::Rows { run, columns } => self.rows(&mut view, &run.value, columns),
-        }
-        self.templates.render("table.html", &view)
-    }
-
-    fn rows(&self, view: &mut TableView, run: &str, columns: &[crate::study::Text]) {
-        let Some(run) = self.outcome.runs.iter().find(|candidate| candidate.name == run) else {
-            return;
-        };
-        let Some(rows) = &run.rows else {
-            return;
-        };
-        let states = self.models[run.model].states.len();
-        let wanted: Vec<_> = if columns.is_empty() {
-            rows.columns.iter().take(states).collect()
-        } else {
-            let find =
-                |name: &crate::study::Text| rows.columns.iter().find(|column| column.name == name.value);
-            columns.iter().filter_map(find).collect()
-        };
-        view.heads.push(HeadView { name: "t".to_owned(), unit: run.time_unit.clone().unwrap_or_default() });
-        for column in &wanted {
-            view.heads
-                .push(HeadView { name: column.name.clone(), unit: column.unit.clone().unwrap_or_default() });
-        }
-        // One place for a whole column: that which its largest bound supports.
-        let place_of = |column: &RowColumn| {
-            let largest = column.bounds.iter().flatten().fold(0.0, |largest, bound| larger(largest, *bound));
-            let size = column.values.iter().fold(0.0, |size, value| larger(size, value.abs()));
-            let coarsest = if size > 0.0 { decade(size) - MOST_DIGITS + 1 } else { i32::MIN };
-            (largest > 0.0).then(|| (decade(largest) - 1).max(coarsest))
-        };
-        let places: Vec<Option<i32>> = wanted.iter().map(|column| place_of(column)).collect();
-        let stride = rows.times.len().div_ceil(MOST_ROWS).max(1);
-        for k in (0..rows.times.len()).step_by(stride) {
-            let time =
-                CellView { value: size_plain(rows.times[k]), bound: String::new(), grade: String::new() };
-            let mut cells = vec![time];
-            for (column, place) in wanted.iter().zip(&places) {
-                let number = match (column.bounds[k], place) {
-                    (Some(bound), Some(place)) => split(shown_at(column.values[k], bound, *place), None),
-                    (bound, _) => parts(Some(column.values[k]), bound, false, None),
-                };
-                cells.push(CellView {
-                    value: format!("{}{}", number.value, tail(&number.unit)),
-                    bound: number.bound,
-                    grade: column.grades[k].word().to_owned(),
+                above.push(level);
+                let slug = slug(&text);
+                found.push(Heading {
+                    // The title of the page is level 1.
+                    level: LEVELS[above.len().min(LEVELS.len() - 1)],
+                    id: page.ids.take(&format!("section-{slug}")),
+                    text,
+                    slug,
                 });
             }
-            view.rows.push(cells);
-        }
-        for c in 0..view.heads.len() {
-            let mut values: Vec<&mut String> = view.rows.iter_mut().map(|row| &mut row[c].value).collect();
-            align(&mut values);
-            let mut bounds: Vec<&mut String> = view.rows.iter_mut().map(|row| &mut row[c].bound).collect();
-            align(&mut bounds);
-        }
-    }
-
-    fn criteria(&self, block: &CriteriaBlock, first: usize) -> Result<String, TemplateError> {
-        let mut rows = Vec::new();
-        for (entry, criterion) in block.criteria.iter().zip(&self.outcome.criteria[first..]) {
-            let quantity = self.outcome.quantity(&entry.quantity.value);
-            let unit = entry.limit.unit.as_ref().map_or_else(String::new, |unit| format!(" {unit}"));
-            rows.push(CriterionView {
-                name: criterion.name.clone(),
-                text: criterion.text.clone(),
-                target: quantity.map_or_else(String::new, |(run, q)| quantity_id(&run.name, &q.name)),
-                shown: quantity.map_or_else(String::new, |(_, quantity)| shown(quantity)),
-                margin: criterion.margin.map_or_else(
-                    || "\u{2013}".to_owned(),
-                    |margin| format!("{}{unit}", rough_or_plain(margin)),
-                ),
-                verdict: criterion.verdict.words().to_owned(),
-                class: match criterion.verdict {
-                    Verdict::Met => "met",
-                    Verdict::Undecided => "undecided",
-                    Verdict::NotMet => "not-met",
+            Part::Markdown(Event::Text(text) | Event::Code(text)) => {
+                if let Some((_, so_far)) = &mut open {
+                    so_far.push_str(text);
                 }
-                .to_owned(),
-                expect: criterion
-                    .expect
-                    .as_ref()
-                    .map_or_else(String::new, |(verdict, _)| verdict.words().to_owned()),
-                because: criterion.expect.as_ref().map_or_else(String::new, |(_, because)| because.clone()),
-                as_expected: criterion.is_in_order(),
-            });
+            }
+            Part::Quote(quote) => {
+                if let Some((_, so_far)) = &mut open {
+                    so_far.push_str(&words(page, quote)?);
+                }
+            }
+            Part::Markdown(_) | Part::Block(_) => {}
         }
-        self.templates.render("criteria.html", &CriteriaView { rows })
+    }
+    Ok(found)
+}
+
+/// What is open around an event.
+enum Frame {
+    Body,
+    Table,
+    Footnote(String),
+    Image(CowStr<'static>),
+}
+
+struct Writer<'p, 'a> {
+    page: &'p mut Page<'a>,
+    citations: &'p mut Citations,
+    /// Those still to come.
+    headings: VecDeque<Heading>,
+    /// From the slug of a heading to its id.
+    targets: BTreeMap<String, String>,
+    stack: Vec<(Frame, Vec<Event<'static>>)>,
+    /// For each open link whether it is kept.
+    kept_links: Vec<bool>,
+    /// Number and id of each footnote by its label.
+    footnotes: BTreeMap<String, (usize, String)>,
+    /// The labels of the footnotes that have been written.
+    defined: Vec<String>,
+    numbering: Numbering,
+}
+
+impl Writer<'_, '_> {
+    fn markdown(&mut self, event: Event<'static>) -> Result<(), ReportError> {
+        match event {
+            Event::Html(text) | Event::InlineHtml(text) => self.push(Event::Text(text)),
+            Event::Start(Tag::Heading { .. }) => {
+                if let Some(Heading { level, id, .. }) = self.headings.front() {
+                    let (level, id) = (*level, Some(id.clone().into()));
+                    self.push(Event::Start(Tag::Heading {
+                        level,
+                        id,
+                        classes: Vec::new(),
+                        attrs: Vec::new(),
+                    }));
+                }
+            }
+            Event::End(TagEnd::Heading(_)) => {
+                if let Some(heading) = self.headings.pop_front() {
+                    self.push(Event::End(TagEnd::Heading(heading.level)));
+                }
+            }
+            Event::Start(Tag::Link { link_type, dest_url, title, id }) => {
+                let target = self.destination(link_type, dest_url);
+                self.kept_links.push(target.is_some());
+                if let Some(dest_url) = target {
+                    self.push(Event::Start(Tag::Link { link_type, dest_url, title, id }));
+                }
+            }
+            Event::End(TagEnd::Link) => {
+                if self.kept_links.pop() == Some(true) {
+                    self.push(Event::End(TagEnd::Link));
+                }
+            }
+            Event::Start(Tag::Table(alignments)) => {
+                self.open(Frame::Table);
+                self.push(Event::Start(Tag::Table(alignments)));
+            }
+            Event::Start(Tag::FootnoteDefinition(label)) => self.open(Frame::Footnote(label.into_string())),
+            Event::Start(Tag::Image { dest_url, .. }) => self.open(Frame::Image(dest_url)),
+            Event::End(end @ TagEnd::Table) => {
+                self.push(Event::End(end));
+                self.close()?;
+            }
+            Event::End(TagEnd::FootnoteDefinition | TagEnd::Image) => self.close()?,
+            Event::FootnoteReference(label) => {
+                let (number, id) = self.footnote(&label);
+                let view = BTreeMap::from([("number", number.to_string()), ("id", id)]);
+                let html = self.page.templates.render("prose-footnote-mark.html", &view)?;
+                self.push(Event::InlineHtml(html.trim().to_owned().into()));
+            }
+            other => self.push(other),
+        }
+        Ok(())
+    }
+
+    fn quote(&mut self, of: &Quote) -> Result<(), ReportError> {
+        if self.stack.iter().any(|(frame, _)| matches!(frame, Frame::Image(_))) {
+            let text = words(self.page, of)?;
+            self.push(Event::Text(text.into()));
+            return Ok(());
+        }
+        let mut view = quote(self.page, self.citations, &of.quantity.value, "text", of.plain)?;
+        view.linked = !self.kept_links.contains(&true);
+        let html = self.page.templates.render("prose-quote.html", &view)?;
+        self.push(Event::InlineHtml(html.trim().to_owned().into()));
+        Ok(())
+    }
+
+    fn push(&mut self, event: Event<'static>) {
+        if let Some((_, events)) = self.stack.last_mut() {
+            events.push(event);
+        }
+    }
+
+    fn open(&mut self, frame: Frame) {
+        self.stack.push((frame, Vec::new()));
+    }
+
+    fn close(&mut self) -> Result<(), ReportError> {
+        if self.stack.len() < 2 {
+            return Ok(());
+        }
+        let Some((frame, events)) = self.stack.pop() else { return Ok(()) };
+        match frame {
+            Frame::Body => {}
+            Frame::Table => {
+                let view = BTreeMap::from([("html", to_html(events))]);
+                let html = self.page.templates.render("prose-table.html", &view)?;
+                self.push(Event::Html(html.into()));
+            }
+            Frame::Footnote(label) => {
+                let (number, id) = self.footnote(&label);
+                // A label that is defined twice is written once: the second would have the same id.
+                if !self.defined.contains(&label) {
+                    self.defined.push(label);
+                    let html = to_html(events);
+                    let view = BTreeMap::from([("html", html), ("number", number.to_string()), ("id", id)]);
+                    let html = self.page.templates.render("prose-footnote.html", &view)?;
+                    self.push(Event::Html(html.into()));
+                }
+            }
+            Frame::Image(dest_url) => self.image(dest_url, events),
+        }
+        Ok(())
+    }
+
+    /// An image that lies in the page is kept; any other is told by its text, since a report needs no network.
+    fn image(&mut self, dest_url: CowStr<'static>, events: Vec<Event<'static>>) {
+        if is_image_data(&dest_url) {
+            let (link_type, title, id) = (LinkType::Inline, CowStr::from(""), CowStr::from(""));
+            self.push(Event::Start(Tag::Image { link_type, dest_url, title, id }));
+            for event in events {
+                self.push(event);
+            }
+            self.push(Event::End(TagEnd::Image));
+        } else {
+            for event in events {
+                if matches!(event, Event::Text(_) | Event::Code(_)) {
+                    self.push(event);
+                }
+            }
+        }
+    }
+
+    fn footnote(&mut self, label: &str) -> (usize, String) {
+        let next = self.footnotes.len() + 1;
+        let ids = &mut self.page.ids;
+        self.footnotes
+            .entry(label.to_owned())
+            .or_insert_with(|| (next, ids.take(&format!("note-{next}"))))
+            .clone()
+    }
+
+    /// Where a link may lead: to an address of a harmless kind, or to a heading of the study.
+    fn destination(&self, link_type: LinkType, to: CowStr<'static>) -> Option<CowStr<'static>> {
+        if let Some(slug) = to.strip_prefix('#') {
+            return self.targets.get(slug).map(|id| format!("#{id}").into());
+        }
+        let lower = to.to_ascii_lowercase();
+        let known = ["http://", "https://", "mailto:"].iter().any(|scheme| lower.starts_with(scheme));
+        (known || matches!(link_type, LinkType::Email)).then_some(to)
     }
 }
 
-/// A margin to two significant digits: it inherits the bound of its quantity.
-fn rough_or_plain(value: f64) -> String {
-    if value.fract() == 0.0 && value.abs() < 1e6 { rough(value).text(None) } else { size(value) }
+/// A quote as words, for places that hold no markup.
+fn words(page: &Page<'_>, quote: &Quote) -> Result<String, ReportError> {
+    let name = &quote.quantity.value;
+    let (_, quantity) = page
+        .inputs
+        .outcome
+        .quantity(name)
+        .ok_or_else(|| ReportError::Missing(format!("the quantity `{name}`")))?;
+    let text = block::text(page, quantity, quote.plain);
+    Ok(match (quantity.value, quantity.bound) {
+        (None, _) => "no value".to_owned(),
+        (_, None) => format!("{text} (no bound)"),
+        _ => text,
+    })
 }
 
-fn size_plain(value: f64) -> String {
-    // Times of rows are multiples of the interval; their last binary digits are no news.
-    let short: f64 = format!("{value:.11e}").parse().unwrap_or(value);
-    crate::figure::digits::plain(short)
+fn to_html(events: Vec<Event<'static>>) -> String {
+    let mut html = String::new();
+    pulldown_cmark::html::push_html(&mut html, events.into_iter());
+    html
 }
 
-fn tail(unit: &str) -> String {
-    if unit.is_empty() { String::new() } else { format!(" {}", unit.trim_end()) }
+/// Lower case, with a hyphen for every run of other characters than letters and digits.
+fn slug(text: &str) -> String {
+    let words = text.split(|c: char| !c.is_alphanumeric()).filter(|word| !word.is_empty());
+    words.map(str::to_lowercase).collect::<Vec<_>>().join("-")
 }
 
-/// The title is the heading of level 1, so those of the prose go down by one where they start there.
-fn lower_heading(event: Event<'static>) -> Event<'static> {
-    let down = |level: HeadingLevel| match level {
-        HeadingLevel::H1 | HeadingLevel::H2 => HeadingLevel::H2,
-        HeadingLevel::H3 => HeadingLevel::H3,
-        HeadingLevel::H4 => HeadingLevel::H4,
-        HeadingLevel::H5 => HeadingLevel::H5,
-        HeadingLevel::H6 => HeadingLevel::H6,
-    };
-    match event {
-        Event::Start(Tag::Heading { level, id, classes, attrs }) => {
-            Event::Start(Tag::Heading { level: down(level), id, classes, attrs })
-        }
-        Event::End(TagEnd::Heading(level)) => Event::End(TagEnd::Heading(down(level))),
-        event => event,
-    }
+fn is_image_data(url: &str) -> bool {
+    let kinds = ["png", "jpeg", "gif", "webp", "svg+xml"];
+    let lower = url.to_ascii_lowercase();
+    lower.strip_prefix("data:image/").is_some_and(|rest| {
+        kinds.iter().any(|kind| rest.strip_prefix(kind).is_some_and(|r| r.starts_with([';', ','])))
+    })
 }
+
+const LEVELS: [HeadingLevel; 6] = [
+    HeadingLevel::H1,
+    HeadingLevel::H2,
+    HeadingLevel::H3,
+    HeadingLevel::H4,
+    HeadingLevel::H5,
+    HeadingLevel::H6,
+];

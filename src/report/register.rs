@@ -1,90 +1,81 @@
 //! The register: the page that lists all issued studies.
 
-use serde::Serialize;
-
-use super::templates::{TemplateError, Templates};
+use super::summary::{class, grade};
+use super::view::{RegisterGroup, RegisterRow, RegisterView, VerdictCount};
+use super::{ReportError, Templates};
+use crate::bound::Grade;
+use crate::study::block::criteria::Verdict;
+use std::collections::BTreeMap;
 
 /// An issued study.
-#[derive(Clone, Debug, Serialize)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct RegisterEntry {
-    /// Folder of the report below the register: `deep/surge`.
-    pub name: String,
-    /// The title.
+    /// The folder of its report inside the folder of all reports, with forward slashes; empty for the top one.
+    pub folder: String,
+    /// Its number.
+    pub number: Option<String>,
+    /// Its title.
     pub title: String,
-    /// `number`
-    pub number: String,
-    /// `revision`
-    pub revision: String,
-    /// `date`
-    pub date: String,
-    /// Criteria met.
-    pub met: usize,
-    /// Criteria not met.
-    pub not_met: usize,
-    /// Criteria undecided.
-    pub undecided: usize,
-    /// The weakest grade of its quantities, in a word; empty where there is none.
-    pub weakest: String,
+    /// Its revision.
+    pub revision: Option<String>,
+    /// Its date.
+    pub date: Option<String>,
+    /// How many criteria came out so, and how many of them as the study expects; a verdict that did not come
+    /// may be left out.
+    pub verdicts: Vec<(Verdict, usize, usize)>,
+    /// The weakest grade of its quantities.
+    pub weakest: Option<Grade>,
+    /// The address of its report relative to the register: `surge/report.html`.
+    pub link: String,
 }
 
-#[derive(Serialize)]
-struct RegisterView {
-    folders: Vec<FolderView>,
-    count: usize,
-}
-
-#[derive(Serialize)]
-struct FolderView {
-    name: String,
-    entries: Vec<LineView>,
-}
-
-#[derive(Serialize)]
-struct LineView {
-    link: String,
-    #[serde(flatten)]
-    entry: RegisterEntry,
-}
-
-/// Writes the register as HTML, grouped by folder; `entries` come in the order of their names.
+/// The register as one HTML page: by folder, then by number and title.
 ///
 /// # Errors
-/// [`TemplateError`] where the template cannot be filled.
-pub fn compose_register(entries: &[RegisterEntry], templates: &Templates) -> Result<String, TemplateError> {
-    let mut folders: Vec<FolderView> = Vec::new();
+/// [`ReportError::Template`] where a template of the user's asks for what is not there.
+pub fn compose_register(entries: &[RegisterEntry], templates: &Templates) -> Result<String, ReportError> {
+    let mut groups: BTreeMap<&str, Vec<&RegisterEntry>> = BTreeMap::new();
     for entry in entries {
-        let folder = entry.name.rsplit_once('/').map_or("", |(folder, _)| folder);
-        let line = LineView { link: format!("{}/report.html", percent(&entry.name)), entry: entry.clone() };
-        match folders.iter_mut().find(|known| known.name == folder) {
-            Some(known) => known.entries.push(line),
-            None => folders.push(FolderView { name: folder.to_owned(), entries: vec![line] }),
-        }
+        groups.entry(entry.folder.as_str()).or_default().push(entry);
     }
-    templates.render("register.html", &RegisterView { folders, count: entries.len() })
+    let groups = groups.into_iter().map(|(folder, mut entries)| {
+        entries.sort_by_key(|entry| (&entry.number, &entry.title, &entry.link));
+        RegisterGroup { folder: folder.to_owned(), rows: entries.into_iter().map(row).collect() }
+    });
+    let view = RegisterView { groups: groups.collect(), count: entries.len() };
+    templates.render("register.html", &view)
 }
 
-/// A path as part of an address: all but unreserved characters and `/` percent-encoded (RFC 3986, 2.1).
-fn percent(path: &str) -> String {
-    let mut text = String::new();
-    for byte in path.bytes() {
-        if byte.is_ascii_alphanumeric() || b"-._~/".contains(&byte) {
-            text.push(char::from(byte));
-        } else {
-            text.push('%');
-            text.extend(
-                [byte >> 4, byte & 15].map(|half| char::from(b"0123456789ABCDEF"[usize::from(half)])),
-            );
-        }
+fn row(entry: &RegisterEntry) -> RegisterRow {
+    let counts: Vec<VerdictCount> = [Verdict::Met, Verdict::NotMet, Verdict::Undecided]
+        .into_iter()
+        .map(|verdict| {
+            let of = entry.verdicts.iter().filter(|(came, ..)| *came == verdict);
+            VerdictCount {
+                word: verdict.words(),
+                class: class(verdict),
+                count: of.clone().map(|(_, count, _)| count).sum(),
+                expected: of.map(|(.., expected)| expected).sum(),
+            }
+        })
+        .collect();
+    RegisterRow {
+        number: entry.number.clone(),
+        title: entry.title.clone(),
+        revision: entry.revision.clone(),
+        date: entry.date.clone(),
+        criteria: counts.iter().map(|count| count.count).sum(),
+        counts,
+        weakest: entry.weakest.map(grade),
+        link: address(&entry.link),
     }
-    text
 }
 
-#[cfg(test)]
-mod tests {
-    use super::*;
-
-    #[test]
-    fn paths_become_addresses() {
-        assert_eq!(percent("deep/pump & valve"), "deep/pump%20%26%20valve");
-    }
+/// A relative address with everything but plain letters escaped: a name with `:` is no scheme.
+fn address(path: &str) -> String {
+    let plain = |byte: u8| byte.is_ascii_alphanumeric() || matches!(byte, b'/' | b'-' | b'_' | b'.' | b'~');
+    let escaped = |byte: u8| if plain(byte) { char::from(byte).to_string() } else { format!("%{byte:02X}") };
+    let text: String = path.bytes().map(escaped).collect();
+    // Two slashes at the start would name another machine.
+    text.trim_start_matches('/').to_owned()
 }
