@@ -31,7 +31,9 @@ impl From<Failure> for IssueError {
 impl From<ReportError> for IssueError {
     fn from(error: ReportError) -> Self {
         match error {
-            ReportError::Template(_) | ReportError::UnknownTemplate { .. } => IssueError::Template(error.to_string()),
+            ReportError::Template(_) | ReportError::UnknownTemplate { .. } => {
+                IssueError::Template(error.to_string())
+            }
             ReportError::Missing(_) => IssueError::Defect(error.to_string()),
             ReportError::Failure(failure) => IssueError::Machine(failure),
         }
@@ -57,11 +59,7 @@ pub(super) fn tell(error: &IssueError, shown: &str, console: &Console) -> Status
             console.fault(&format!("{shown}: {errors} {}", if errors == 1 { "error" } else { "errors" }));
             Status::Wrong
         }
-        IssueError::Unreadable(why) => {
-            console.fault(&format!("{shown}: {why}"));
-            Status::Wrong
-        }
-        IssueError::Template(why) => {
+        IssueError::Unreadable(why) | IssueError::Template(why) => {
             console.fault(&format!("{shown}: {why}"));
             Status::Wrong
         }

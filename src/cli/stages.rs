@@ -5,16 +5,16 @@ use super::find::Found;
 use super::pipeline::{self, Checked};
 use crate::bound::{Grade, Outcome, Quantity, RunOutcome, Steps};
 use crate::fault::{Failure, Faults, Sources};
+use crate::figure::digits;
 use crate::model::Model;
 use crate::record::digest::{FileDigest, Was};
 use crate::record::json::StepControl;
 use crate::record::register::Entry;
-use crate::figure::digits;
 use crate::report::{self, RegisterEntry, ReportInputs, ShownText, Templates};
-use crate::study::block::criteria::Verdict;
 use crate::scheme::stability::Stability;
 use crate::scheme::{self, Scheme, control, order};
 use crate::study::Study;
+use crate::study::block::criteria::Verdict;
 use std::path::PathBuf;
 
 /// What the stages need to know beside the study.
@@ -158,7 +158,8 @@ fn show_text(quantity: &Quantity) -> ShownText {
         Some(bound) => digits::shown(value, bound),
         None => digits::rough(value),
     };
-    let joined = if quantity.whole || quantity.bound.is_none() { shown.value_text(unit) } else { shown.text(unit) };
+    let joined =
+        if quantity.whole || quantity.bound.is_none() { shown.value_text(unit) } else { shown.text(unit) };
     ShownText {
         value: shown.value_text(None),
         bound: quantity.bound.map(|_| shown.bound_text(None)),
@@ -234,7 +235,9 @@ fn percent(path: &str) -> String {
             text.push(char::from(byte));
         } else {
             text.push('%');
-            text.extend([byte >> 4, byte & 15].map(|half| char::from(b"0123456789ABCDEF"[usize::from(half)])));
+            text.extend(
+                [byte >> 4, byte & 15].map(|half| char::from(b"0123456789ABCDEF"[usize::from(half)])),
+            );
         }
     }
     text

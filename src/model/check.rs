@@ -21,7 +21,7 @@ enum Symbol {
 
 /// The names of a model.
 #[derive(Clone, Debug, Default)]
-pub(super) struct Symbols(BTreeMap<String, Symbol>);
+pub(crate) struct Symbols(BTreeMap<String, Symbol>);
 
 /// The names of a model as an expression may use them.
 pub(super) struct NameScope<'a> {

@@ -13,7 +13,8 @@ pub use check::check;
 use crate::fault::Faults;
 use crate::study::Text;
 use crate::study::block::model::{ParameterEntry, StateEntry};
-use check::{NameScope, Symbols};
+use check::NameScope;
+pub(crate) use check::Symbols;
 use graph::{Graph, NodeId, Wrt};
 
 /// A checked model.
@@ -33,7 +34,7 @@ pub struct Model {
     pub invariants: Vec<Expression>,
     /// All expressions, common parts shared.
     pub graph: Graph,
-    symbols: Symbols,
+    pub(crate) symbols: Symbols,
 }
 
 /// Which names an expression may use.

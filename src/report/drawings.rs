@@ -1,12 +1,12 @@
 //! Draws the charts of a study, and the convergence and stability charts of its runs.
 
+use super::{ChartFigure, Figures, RunFigures, tables};
 use crate::bound::{Curve, Grade, Outcome, Quantity, RowColumn, RunOutcome};
 use crate::figure::chart::{self, Chart, Series};
 use crate::figure::convergence::{self, Errors};
 use crate::figure::{digits, stability};
-use crate::scheme::stability::Stability;
-use super::{ChartFigure, Figures, RunFigures, tables};
 use crate::model::Model;
+use crate::scheme::stability::Stability;
 use crate::study::Study;
 use crate::study::block::chart::{ChartBlock, Shows, Trace};
 

@@ -113,6 +113,7 @@ fn of_run(
             .map(|c| CompanionView { steps: count(c.steps), evaluations: count(c.evaluations) }),
         evaluations: count(evaluations),
         caps: run.caps.clone(),
+        remarks: run.remarks.clone(),
         invariants: run
             .invariants
             .iter()

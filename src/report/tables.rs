@@ -24,7 +24,8 @@ fn table(block: &TableBlock, models: &[Model], outcome: &Outcome) -> TableFigure
     };
     match &block.lists {
         Lists::Quantities(names) => {
-            let found = names.iter().filter_map(|name| outcome.quantity(&name.value).map(|(_, q)| (&name.value, q)));
+            let found =
+                names.iter().filter_map(|name| outcome.quantity(&name.value).map(|(_, q)| (&name.value, q)));
             figure.columns = ["quantity", "what", "value", "± bound", "unit", "grade"]
                 .into_iter()
                 .map(|name| head(name, None, name == "value" || name == "± bound"))
@@ -94,7 +95,11 @@ fn rows(figure: &mut TableFigure, run: &str, wanted: &[&str], models: &[Model], 
     }
     let stride = rows.times.len().div_ceil(MOST_ROWS).max(1);
     if stride > 1 {
-        figure.note = Some(format!("Every {stride}th of {} rows; all stand in data/{}.csv", rows.times.len(), run.name));
+        figure.note = Some(format!(
+            "Every {stride}th of {} rows; all stand in data/{}.csv",
+            rows.times.len(),
+            run.name
+        ));
     }
     let places: Vec<Option<i32>> = columns.iter().map(|column| place(column)).collect();
     for k in (0..rows.times.len()).step_by(stride) {

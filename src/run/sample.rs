@@ -137,17 +137,14 @@ impl EndSampler {
 impl Observer for EndSampler {
     fn step(&mut self, step: &Accepted<'_>) {
         let end = step.piece.t_new;
-        let take = match &self.wanted {
-            Some(times) => {
-                while times.get(self.next).is_some_and(|time| *time < end) {
-                    self.next += 1;
-                }
-                times.get(self.next) == Some(&end)
+        let take = if let Some(times) = &self.wanted {
+            while times.get(self.next).is_some_and(|time| *time < end) {
+                self.next += 1;
             }
-            None => {
-                self.seen += usize::from(!step.cut);
-                !step.cut && self.seen.is_multiple_of(self.stride)
-            }
+            times.get(self.next) == Some(&end)
+        } else {
+            self.seen += usize::from(!step.cut);
+            !step.cut && self.seen.is_multiple_of(self.stride)
         };
         if take {
             self.rows.push((end, step.piece.end().to_vec()));

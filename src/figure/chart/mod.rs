@@ -5,9 +5,9 @@ use super::clip::{Corners, Point, clip, clip_area, inside, segment};
 use super::frame::{BELOW, Frame, SMALL, TOP, left_room, most_labels};
 use super::labels::{self, Entry, Place};
 use super::surface::{Anchor, Ink, Surface};
-use crate::run::thin::{PathThinner, thin};
 use super::width::{fit, text_width};
 use crate::arithmetic::{larger, smaller};
+use crate::run::thin::{PathThinner, thin};
 
 /// Width of a picture, in CSS pixels at its natural size.
 pub(super) const WIDTH: f64 = 760.0;

@@ -2,10 +2,11 @@
 
 use super::STUDY;
 use crate::bound::{
-    Companion, CriterionOutcome, Drift, Estimates, ExactError, Grade, Mesh, Outcome, Quantity, Rejections,
-    RunOutcome, Steps,
+    Companion, CriterionOutcome, Drift, Estimates, ExactError, Grade, Mesh, Outcome, Quantity, RunOutcome,
+    Steps,
 };
 use crate::fault::{FileId, Span};
+use crate::run::Rejections;
 use crate::scheme::{Dense, ExactTableau, Scheme, Tableau};
 use crate::study::block::criteria::{Relation, Verdict};
 use std::sync::LazyLock;
@@ -91,6 +92,7 @@ pub(in crate::report) fn run(name: &str, steps: Steps, quantities: Vec<Quantity>
         exact: Vec::new(),
         spectrum: Vec::new(),
         caps: Vec::new(),
+        remarks: Vec::new(),
     }
 }
 
@@ -203,7 +205,7 @@ static RK4: LazyLock<Scheme> = LazyLock::new(|| Scheme {
         b: vec![1.0 / 6.0, 1.0 / 3.0, 1.0 / 3.0, 1.0 / 6.0],
         error: None,
         first_same_as_last: false,
-        exact: ExactTableau { c: Vec::new(), a: Vec::new(), b: Vec::new(), b_hat: None },
+        exact: ExactTableau { c: Vec::new(), a: Vec::new(), b: Vec::new(), b_hat: None, b_theta: None },
     },
     dense: Dense::Hermite { lifts: 0 },
 });

@@ -70,6 +70,7 @@ pub(super) fn shaft() -> Model {
         derived: vec![named("loss", "k*v*abs(v)", Some("m"), Some("head lost to friction"))],
         invariants: vec![named("energy", "0.5*v^2 + 0.5*(g*As/(L*A))*z^2", None, None)],
         graph: Graph::default(),
+        symbols: crate::model::Symbols::default(),
     }
 }
 

@@ -33,6 +33,8 @@ pub struct RunLedger {
     pub evaluations: String,
     /// What limits the grades of the whole run.
     pub caps: Vec<String>,
+    /// What a reader should know beside that.
+    pub remarks: Vec<String>,
     /// The drift of the invariants.
     pub invariants: Vec<DriftRow>,
     /// The largest true errors.
