@@ -1,7 +1,7 @@
 //! Charts as SVG, tables as data, numbers as text.
 //!
-//! Enters: plain numbers and titles. Leaves: strings and plain data. This stage knows nothing of runs, and holds no
-//! HTML.
+//! Enters: plain numbers and titles. Leaves: strings and plain data. Of runs this stage knows the thinning of
+//! curves alone; it holds no HTML.
 
 pub mod axis;
 pub mod chart;

@@ -199,7 +199,10 @@ fn limits(lines: &[Trace], outcome: &Outcome, expression: &str) -> Vec<(f64, Str
             quantity.text.strip_prefix(kind).is_some_and(|read| !expression.is_empty() && read == expression)
         });
         if extreme && lines.iter().any(|trace| trace.run.value == run.name) {
-            let entry = (criterion.limit, format!("{} {}", criterion.name, criterion.limit_text));
+            let entry = (
+                criterion.limit,
+                format!("{} {}", criterion.name, criterion.limit_text.replace('-', "\u{2212}")),
+            );
             if !list.iter().any(|(limit, _)| *limit == entry.0) {
                 list.push(entry);
             }

@@ -6,6 +6,7 @@
 use std::fs;
 use std::path::Path;
 
+use halfstep::cli::pipeline;
 use halfstep::fault::{Faults, Sources, show};
 use halfstep::study::{self, Part, Study, Text};
 use pulldown_cmark::Event;
@@ -280,6 +281,30 @@ fn mutations_of_a_sound_study_are_read() {
     }
     // Were all of them sound or all refused at the first line, the mutations would test nothing.
     assert!(refused > 1000 && refused < 3000, "{refused}");
+}
+
+/// All stages: what passes the checks is executed, with few steps; no number comes without its bound or a reason.
+#[test]
+fn mutations_of_a_sound_study_are_checked_and_executed() {
+    let mut executed = 0;
+    for seed in 0..1500 {
+        let text = mutate(SOUND, seed);
+        let mut sources = Sources::default();
+        let file = sources.add("study.md", text.as_str());
+        let mut faults = Faults::new();
+        let checked = pipeline::check(&sources, file, Some(2000), &mut faults);
+        assert_eq!(checked.is_none(), faults.any_error(), "{}", show(&faults, &sources, 20, false));
+        let Some(checked) = checked else { continue };
+        let outcome = pipeline::execute(&checked, &mut faults, &|_| ());
+        assert_eq!(outcome.is_none(), faults.any_error(), "{}", show(&faults, &sources, 20, false));
+        for quantity in outcome.iter().flat_map(|outcome| &outcome.runs).flat_map(|run| &run.quantities) {
+            assert!(quantity.value.is_none_or(f64::is_finite), "{quantity:?}");
+            assert!(quantity.bound.is_none_or(|bound| bound >= 0.0 && bound.is_finite()), "{quantity:?}");
+            assert!(!quantity.why.is_empty(), "{quantity:?}");
+            executed += 1;
+        }
+    }
+    assert!(executed > 100, "{executed}");
 }
 
 #[test]
