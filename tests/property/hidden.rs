@@ -32,9 +32,7 @@ fn a_jump_hidden_inside_a_step_is_at_most_indicated() {
             let error = (quantity.value.unwrap() - exact).abs();
             count += 1;
             let text = format!("{} step {step} jump at {a}: error {error:e} {quantity:?}", scheme.key);
-            // A jump whose effect is small beside the error of the scheme may be overlooked: its bound must hold.
-            let broken = error > quantity.bound.unwrap_or(f64::INFINITY);
-            if quantity.grade < Grade::Indicated && (broken || scheme.order >= 2) {
+            if quantity.grade < Grade::Indicated {
                 misgraded.push(text.clone());
             }
             if quantity.bound.is_some_and(|bound| error > bound) {
@@ -44,6 +42,34 @@ fn a_jump_hidden_inside_a_step_is_at_most_indicated() {
     }
     assert!(misgraded.is_empty(), "{} of {count}:\n{}", misgraded.len(), misgraded.join("\n"));
     assert!(violated.len() * 50 <= count, "{} of {count}:\n{}", violated.len(), violated.join("\n"));
+}
+
+/// A jump so small that its effect drowns in the error of the scheme may be overlooked: then the bound must hold.
+#[test]
+fn a_small_hidden_jump_breaks_no_good_bound() {
+    let mut random = Random::new(17);
+    let (mut good, mut broken) = (0, Vec::new());
+    for scheme in all() {
+        for _ in 0..200 {
+            let (a, step) = (random.between(0.3, 1.7), random.between(0.03, 0.2));
+            let (k, size) = (random.between(0.3, 2.0), 10.0_f64.powf(random.between(-6.0, -0.7)));
+            let model = format!("states: {{x: 1}}\nrates:\n  x: \"-{k}*x+{size:e}*(1+tanh(1e9*(t-{a})))/2\"");
+            let exact = (-k * 2.0_f64).exp() + size / k * (1.0 - (-k * (2.0 - a)).exp());
+            let (_, outcome) = evaluate("hidden.md", &study(&model, scheme.key, step, 2.0)).unwrap();
+            let quantity = &outcome.runs[0].quantities[0];
+            let error = (quantity.value.unwrap() - exact).abs();
+            if quantity.grade < Grade::Indicated {
+                good += 1;
+                if error > quantity.bound.unwrap() {
+                    broken.push(format!(
+                        "{} step {step} jump {size:e} at {a}: error {error:e} {quantity:?}",
+                        scheme.key
+                    ));
+                }
+            }
+        }
+    }
+    assert!(broken.is_empty(), "{} of {good}:\n{}", broken.len(), broken.join("\n"));
 }
 
 /// The same jump written with `signum` is located and made a mesh point: the order of the scheme is kept.
@@ -187,4 +213,71 @@ fn an_oscillation_in_step_with_the_meshes_is_seen() {
             }
         }
     }
+}
+
+/// Errors of an unstable solution grow by ten orders and more, roundings among them. Closed form: x = sin t.
+#[test]
+fn bounds_hold_where_the_equation_amplifies_every_error() {
+    let mut random = Random::new(23);
+    let (mut good, mut broken) = (0, Vec::new());
+    for scheme in all() {
+        for _ in 0..60 {
+            let (k, until) = (random.between(2.0, 6.0), random.between(3.0, 6.0));
+            let step = 10.0_f64.powf(random.between(-3.3, -0.8));
+            let model = format!("states: {{x: 0}}\nrates:\n  x: \"{k}*(x-sin(t))+cos(t)\"");
+            let text = study(&model, scheme.key, step, until);
+            let Ok((_, outcome)) = evaluate("unstable.md", &text) else { continue };
+            let quantity = &outcome.runs[0].quantities[0];
+            let error = (quantity.value.unwrap() - until.sin()).abs();
+            if let Some(bound) = quantity.bound.filter(|_| quantity.grade < Grade::Indicated) {
+                good += 1;
+                if error > bound {
+                    broken.push(format!(
+                        "{:.2} {} step {step} k {k} until {until}: {quantity:?}",
+                        error / bound,
+                        scheme.key
+                    ));
+                }
+            }
+        }
+    }
+    assert!(good > 100 && broken.is_empty(), "{} of {good}:\n{}", broken.len(), broken.join("\n"));
+}
+
+/// A kink that is smooth within 1e-10, so that no switch marks it, and rates with an infinite slope.
+#[test]
+fn hidden_kinks_and_roots_break_no_good_bound() {
+    let mut random = Random::new(29);
+    let (mut good, mut broken) = (0, Vec::new());
+    for scheme in all() {
+        for _ in 0..60 {
+            let (a, step) = (random.between(0.3, 1.7), 10.0_f64.powf(random.between(-2.5, -0.7)));
+            // x' = |t - a|: x = ((t-a)|t-a| + a^2)/2.  x' = |t - a|^(1/3): x = 3/4 (|t-a|^(4/3) + a^(4/3)) beyond a.
+            for (rate, exact) in [
+                (format!("sqrt((t-{a})^2+1e-20)"), ((2.0 - a) * (2.0 - a) + a * a) / 2.0),
+                (format!("((t-{a})^2)^(1/6)"), 0.75 * ((2.0 - a).powf(4.0 / 3.0) + a.powf(4.0 / 3.0))),
+                (format!("sqrt((t-{a})^2+1e-20)-x"), {
+                    // x' = |t-a| - x: particular solutions a-t+1 before and t-a-1 after, x(a) from the first.
+                    let before = 1.0 - (a + 1.0) * (-a).exp();
+                    (2.0 - a - 1.0) + (before + 1.0) * (-(2.0 - a)).exp()
+                }),
+            ] {
+                let model = format!("states: {{x: 0}}\nrates:\n  x: \"{rate}\"");
+                let (_, outcome) = evaluate("kink.md", &study(&model, scheme.key, step, 2.0)).unwrap();
+                let quantity = &outcome.runs[0].quantities[0];
+                let error = (quantity.value.unwrap() - exact).abs();
+                if let Some(bound) = quantity.bound.filter(|_| quantity.grade < Grade::Indicated) {
+                    good += 1;
+                    if error > bound {
+                        broken.push(format!(
+                            "{:.2} {} step {step} a {a} {rate}: {quantity:?}",
+                            error / bound,
+                            scheme.key
+                        ));
+                    }
+                }
+            }
+        }
+    }
+    assert!(broken.is_empty(), "{} of {good}:\n{}", broken.len(), broken.join("\n"));
 }
