@@ -254,7 +254,7 @@ fn hidden_kinks_and_roots_break_no_good_bound() {
             let (a, step) = (random.between(0.3, 1.7), 10.0_f64.powf(random.between(-2.5, -0.7)));
             // x' = |t - a|: x = ((t-a)|t-a| + a^2)/2.  x' = |t - a|^(1/3): x = 3/4 (|t-a|^(4/3) + a^(4/3)) beyond a.
             for (rate, exact) in [
-                (format!("sqrt((t-{a})^2+1e-20)"), ((2.0 - a) * (2.0 - a) + a * a) / 2.0),
+                (format!("sqrt((t-{a})^2+1e-20)"), 0.5 * (2.0 - a) * (2.0 - a) + 0.5 * a * a),
                 (format!("((t-{a})^2)^(1/6)"), 0.75 * ((2.0 - a).powf(4.0 / 3.0) + a.powf(4.0 / 3.0))),
                 (format!("sqrt((t-{a})^2+1e-20)-x"), {
                     // x' = |t-a| - x: particular solutions a-t+1 before and t-a-1 after, x(a) from the first.
