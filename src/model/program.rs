@@ -3,19 +3,46 @@
 //! What no output needs is dropped, shared parts are computed once, registers are reused when their last reader
 //! is done. The bits are those of evaluating the graph node by node.
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 use super::graph::{Binary, Graph, Node, NodeId, Unary, apply, apply_unary, pick, sign};
 use crate::arithmetic::elementary::power;
 
-/// One instruction: computes a register from registers.
+/// What an instruction computes, from registers `a`, `b` and `c`.
 #[derive(Clone, Copy, Debug, PartialEq)]
-enum Instruction {
-    Unary(Unary, u32, u32),
-    Binary(Binary, u32, u32, u32),
-    Power(u32, u32, u32),
-    Sign { out: u32, on: u32, switch: u32 },
-    Pick { out: u32, on: u32, positive: u32, negative: u32, switch: u32 },
+enum Operation {
+    Add,
+    Subtract,
+    Multiply,
+    Divide,
+    /// `a * b + c`, rounded twice.
+    MultiplyAdd,
+    /// `a * b - c`, rounded twice.
+    MultiplySubtract,
+    /// `c - a * b`, rounded twice.
+    SubtractProduct,
+    Negate,
+    Sqrt,
+    Unary(Unary),
+    Binary(Binary),
+    /// `a` to the power `b`, a whole number and no register.
+    Power,
+    /// The sign of `a`; `b` is the switch.
+    Sign,
+    /// `b` or `c` by the sign of `a`.
+    Pick {
+        switch: u32,
+    },
+}
+
+/// One instruction: computes register `out`.
+#[derive(Clone, Copy, Debug, PartialEq)]
+struct Instruction {
+    operation: Operation,
+    out: u32,
+    a: u32,
+    b: u32,
+    c: u32,
 }
 
 /// Values of some nodes as a function of time, states and parameters.
@@ -57,6 +84,7 @@ impl Program {
             outputs: Vec::new(),
             registers: 0,
         };
+        let products = products(graph, &needed, &readers);
         let mut place: BTreeMap<NodeId, u32> = BTreeMap::new();
         let mut free: Vec<u32> = Vec::new();
         // Leaves first: their registers hold throughout.
@@ -76,25 +104,23 @@ impl Program {
         }
         for id in &needed {
             let node = graph.node(*id);
-            if node.inputs()[0].is_none() {
+            if node.inputs()[0].is_none() || products.contains(id) {
                 continue;
             }
-            let at = |id: NodeId| place[&id];
-            let reads: Vec<u32> = node.inputs().into_iter().flatten().map(at).collect();
+            let (operation, reads) = operation(graph, node, &products);
+            let at = |id: &NodeId| place[id];
+            let register = |k: usize| reads.get(k).map_or(0, at);
+            let (a, b, c) = (register(0), register(1), register(2));
+            let (b, c) = match node {
+                Node::Power(_, n) => (n, 0),
+                Node::Sign { switch, .. } => (switch, 0),
+                _ => (b, c),
+            };
             // The output register is never one that the same instruction reads.
             let out = free.pop().unwrap_or_else(|| program.fresh());
-            program.instructions.push(match node {
-                Node::Unary(function, _) => Instruction::Unary(function, out, reads[0]),
-                Node::Binary(operation, ..) => Instruction::Binary(operation, out, reads[0], reads[1]),
-                Node::Power(_, n) => Instruction::Power(out, reads[0], n),
-                Node::Sign { switch, .. } => Instruction::Sign { out, on: reads[0], switch },
-                Node::Pick { switch, .. } => {
-                    Instruction::Pick { out, on: reads[0], positive: reads[1], negative: reads[2], switch }
-                }
-                Node::Constant(_) | Node::Time | Node::State(_) | Node::Parameter(_) => continue,
-            });
+            program.instructions.push(Instruction { operation, out, a, b, c });
             place.insert(*id, out);
-            for input in node.inputs().into_iter().flatten() {
+            for input in reads {
                 let left = readers.entry(input).or_default();
                 *left -= 1;
                 if *left == 0 && graph.node(input).inputs()[0].is_some() {
@@ -139,24 +165,80 @@ impl Program {
             r[*register as usize] = y[*i as usize];
         }
         let mode = |switch: u32| modes.get(switch as usize).copied().unwrap_or(0);
-        for instruction in &self.instructions {
-            match *instruction {
-                Instruction::Unary(function, out, a) => {
-                    r[out as usize] = apply_unary(function, r[a as usize]);
-                }
-                Instruction::Binary(operation, out, a, b) => {
-                    r[out as usize] = apply(operation, r[a as usize], r[b as usize]);
-                }
-                Instruction::Power(out, a, n) => r[out as usize] = power(r[a as usize], n),
-                Instruction::Sign { out, on, switch } => r[out as usize] = sign(r[on as usize], mode(switch)),
-                Instruction::Pick { out, on, positive, negative, switch } => {
-                    r[out as usize] =
-                        pick(r[on as usize], r[positive as usize], r[negative as usize], mode(switch));
-                }
-            }
+        for Instruction { operation, out, a, b, c } in &self.instructions {
+            let (a, b, c) = (*a as usize, *b as usize, *c as usize);
+            r[*out as usize] = match *operation {
+                Operation::Add => r[a] + r[b],
+                Operation::Subtract => r[a] - r[b],
+                Operation::Multiply => r[a] * r[b],
+                Operation::Divide => r[a] / r[b],
+                Operation::MultiplyAdd => r[a] * r[b] + r[c],
+                Operation::MultiplySubtract => r[a] * r[b] - r[c],
+                Operation::SubtractProduct => r[c] - r[a] * r[b],
+                Operation::Negate => -r[a],
+                Operation::Sqrt => r[a].sqrt(),
+                Operation::Unary(function) => apply_unary(function, r[a]),
+                Operation::Binary(operation) => apply(operation, r[a], r[b]),
+                #[expect(clippy::cast_possible_truncation, reason = "it came from a u32")]
+                Operation::Power => power(r[a], b as u32),
+                #[expect(clippy::cast_possible_truncation, reason = "it came from a u32")]
+                Operation::Sign => sign(r[a], mode(b as u32)),
+                Operation::Pick { switch } => pick(r[a], r[b], r[c], mode(switch)),
+            };
         }
         for (value, register) in out.iter_mut().zip(&self.outputs) {
             *value = r[*register as usize];
         }
     }
+}
+
+/// The products that are computed within the one sum or difference that reads them.
+fn products(graph: &Graph, needed: &BTreeSet<NodeId>, readers: &BTreeMap<NodeId, usize>) -> BTreeSet<NodeId> {
+    let mut within = BTreeSet::new();
+    for id in needed {
+        if let Node::Binary(Binary::Add | Binary::Subtract, a, b) = graph.node(*id) {
+            let alone = |id: &NodeId| {
+                matches!(graph.node(*id), Node::Binary(Binary::Multiply, ..)) && readers.get(id) == Some(&1)
+            };
+            // One product a sum; a square of the same node twice has two readers.
+            within.extend([a, b].into_iter().find(alone));
+        }
+    }
+    within
+}
+
+/// The operation of a node, and the nodes that it reads, products within it resolved.
+fn operation(graph: &Graph, node: Node, products: &BTreeSet<NodeId>) -> (Operation, Vec<NodeId>) {
+    let factors = |id: NodeId| match graph.node(id) {
+        Node::Binary(Binary::Multiply, x, y) if products.contains(&id) => Some((x, y)),
+        _ => None,
+    };
+    if let Node::Binary(kind @ (Binary::Add | Binary::Subtract), a, b) = node {
+        let sum = kind == Binary::Add;
+        if let Some((x, y)) = factors(a) {
+            let operation = if sum { Operation::MultiplyAdd } else { Operation::MultiplySubtract };
+            return (operation, vec![x, y, b]);
+        }
+        if let Some((x, y)) = factors(b) {
+            let operation = if sum { Operation::MultiplyAdd } else { Operation::SubtractProduct };
+            return (operation, vec![x, y, a]);
+        }
+    }
+    let operation = match node {
+        Node::Unary(Unary::Negate, _) => Operation::Negate,
+        Node::Unary(Unary::Sqrt, _) => Operation::Sqrt,
+        Node::Unary(function, _) => Operation::Unary(function),
+        Node::Binary(Binary::Add, ..) => Operation::Add,
+        Node::Binary(Binary::Subtract, ..) => Operation::Subtract,
+        Node::Binary(Binary::Multiply, ..) => Operation::Multiply,
+        Node::Binary(Binary::Divide, ..) => Operation::Divide,
+        Node::Binary(operation, ..) => Operation::Binary(operation),
+        Node::Power(..) => Operation::Power,
+        Node::Pick { switch, .. } => Operation::Pick { switch },
+        // Leaves are no operations and are not asked for.
+        Node::Sign { .. } | Node::Constant(_) | Node::Time | Node::State(_) | Node::Parameter(_) => {
+            Operation::Sign
+        }
+    };
+    (operation, node.inputs().into_iter().flatten().collect())
 }

@@ -14,6 +14,10 @@ use super::tableau::Scheme;
 pub struct Stepper {
     scheme: &'static Scheme,
     states: usize,
+    /// Rows of the tableau without their zeros: index of the stage and coefficient.
+    rows: Vec<Vec<(usize, f64)>>,
+    weights: Vec<(usize, f64)>,
+    error: Option<Vec<(usize, f64)>>,
     /// Stage rates: row `i` holds `k_i`.
     k: Vec<f64>,
     y_stage: Vec<f64>,
@@ -23,7 +27,19 @@ impl Stepper {
     /// A stepper of `scheme` for so many states.
     pub fn new(scheme: &'static Scheme, states: usize) -> Self {
         let stages = scheme.tableau.b.len();
-        Stepper { scheme, states, k: vec![0.0; stages * states], y_stage: vec![0.0; states] }
+        let sparse = |row: &[f64]| -> Vec<(usize, f64)> {
+            row.iter().copied().enumerate().filter(|(_, weight)| *weight != 0.0).collect()
+        };
+        let tableau = &scheme.tableau;
+        Stepper {
+            scheme,
+            states,
+            rows: tableau.a.iter().map(|row| sparse(row)).collect(),
+            weights: sparse(&tableau.b),
+            error: tableau.error.as_ref().map(|row| sparse(row)),
+            k: vec![0.0; stages * states],
+            y_stage: vec![0.0; states],
+        }
     }
 
     /// The scheme.
@@ -62,7 +78,7 @@ impl Stepper {
         let h = t_new - t;
         self.k[..n].copy_from_slice(f);
         for i in 1..stages {
-            weigh(&self.k, n, &tableau.a[i], y, h, &mut self.y_stage);
+            weigh(&self.k, n, &self.rows[i], y, h, &mut self.y_stage);
             let c = tableau.c[i];
             #[expect(
                 clippy::float_cmp,
@@ -71,7 +87,7 @@ impl Stepper {
             let t_stage = if c == 1.0 { t_new } else { t + c * h };
             checked(rates, t_stage, &self.y_stage, &mut self.k[i * n..(i + 1) * n])?;
         }
-        weigh(&self.k, n, &tableau.b, y, h, y_new);
+        weigh(&self.k, n, &self.weights, y, h, y_new);
         if tableau.first_same_as_last {
             f_new.copy_from_slice(&self.k[(stages - 1) * n..]);
             Ok(())
@@ -97,15 +113,13 @@ impl Stepper {
         tolerance: f64,
         scales: &[f64],
     ) -> Option<f64> {
-        let weights = self.scheme.tableau.error.as_ref()?;
+        let weights = self.error.as_ref()?;
         let n = self.states;
         let mut largest = 0.0;
         for i in 0..n {
             let mut sum = 0.0;
-            for (j, weight) in weights.iter().enumerate() {
-                if *weight != 0.0 {
-                    sum += weight * self.k[j * n + i];
-                }
+            for (j, weight) in weights {
+                sum += weight * self.k[j * n + i];
             }
             let size = crate::arithmetic::larger(y[i].abs(), y_new[i].abs());
             let ratio = (h * sum).abs() / (tolerance * (size + scales[i]));
@@ -115,15 +129,16 @@ impl Stepper {
     }
 }
 
-/// `out = y + h * sum_j weights_j k_j`, zero weights left out.
-fn weigh(k: &[f64], n: usize, weights: &[f64], y: &[f64], h: f64, out: &mut [f64]) {
-    for i in 0..n {
-        let mut sum = 0.0;
-        for (j, weight) in weights.iter().enumerate() {
-            if *weight != 0.0 {
-                sum += weight * k[j * n + i];
-            }
+/// `out = y + h * sum_j weights_j k_j`. For each state the sum starts at 0 and `j` ascends; the loops are nested the
+/// other way round, so that whole rows of stage rates are taken at a time.
+fn weigh(k: &[f64], n: usize, weights: &[(usize, f64)], y: &[f64], h: f64, out: &mut [f64]) {
+    out.fill(0.0);
+    for (j, weight) in weights {
+        for (sum, rate) in out.iter_mut().zip(&k[j * n..(j + 1) * n]) {
+            *sum += weight * rate;
         }
-        out[i] = y[i] + h * sum;
+    }
+    for (sum, y) in out.iter_mut().zip(y) {
+        *sum = y + h * *sum;
     }
 }
