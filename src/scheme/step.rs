@@ -130,8 +130,38 @@ impl Stepper {
 }
 
 /// `out = y + h * sum_j weights_j k_j`. For each state the sum starts at 0 and `j` ascends; the loops are nested the
-/// other way round, so that whole rows of stage rates are taken at a time.
+/// other way round, so that whole rows of stage rates are taken at a time. Few states have code of their own, whose
+/// loops the compiler unrolls: the same operations in the same order.
 fn weigh(k: &[f64], n: usize, weights: &[(usize, f64)], y: &[f64], h: f64, out: &mut [f64]) {
+    match n {
+        1 => weigh_few::<1>(k, weights, y, h, out),
+        2 => weigh_few::<2>(k, weights, y, h, out),
+        3 => weigh_few::<3>(k, weights, y, h, out),
+        4 => weigh_few::<4>(k, weights, y, h, out),
+        5 => weigh_few::<5>(k, weights, y, h, out),
+        6 => weigh_few::<6>(k, weights, y, h, out),
+        _ => weigh_many(k, n, weights, y, h, out),
+    }
+}
+
+#[inline]
+fn weigh_few<const N: usize>(k: &[f64], weights: &[(usize, f64)], y: &[f64], h: f64, out: &mut [f64]) {
+    let rows = k.as_chunks::<N>().0;
+    let mut sums = [0.0; N];
+    for (j, weight) in weights {
+        let row = &rows[*j];
+        for i in 0..N {
+            sums[i] += weight * row[i];
+        }
+    }
+    if let (Some(y), Some(out)) = (y.first_chunk::<N>(), out.first_chunk_mut::<N>()) {
+        for i in 0..N {
+            out[i] = y[i] + h * sums[i];
+        }
+    }
+}
+
+fn weigh_many(k: &[f64], n: usize, weights: &[(usize, f64)], y: &[f64], h: f64, out: &mut [f64]) {
     out.fill(0.0);
     for (j, weight) in weights {
         for (sum, rate) in out.iter_mut().zip(&k[j * n..(j + 1) * n]) {
