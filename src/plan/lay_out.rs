@@ -366,7 +366,7 @@ fn curves(
     let mut list: Vec<CurvePlan> = Vec::new();
     let mut good = true;
     for chart in &study.blocks.charts {
-        let Shows::Curves { lines, points, against } = &chart.shows else {
+        let Shows::Curves { lines, against, .. } = &chart.shows else {
             continue;
         };
         let mine = |trace: &&Trace| trace.run.value == block.name.value;
@@ -394,19 +394,6 @@ fn curves(
             };
             if !list.contains(&curve) {
                 list.push(curve);
-            }
-        }
-        for trace in points.iter().filter(mine) {
-            if block.rows.is_none() {
-                good = false;
-                faults.add(
-                    Fault::error(
-                        "no-rows",
-                        trace.run.at,
-                        format!("the run `{}` has no rows to mark", block.name.value),
-                    )
-                    .help("add `rows: every ...` to the run, or show it under `lines`"),
-                );
             }
         }
     }
@@ -442,16 +429,6 @@ fn columns(
             && run.value == block.name.value
         {
             wanted.extend(columns);
-            if block.rows.is_none() {
-                faults.add(
-                    Fault::error(
-                        "no-rows",
-                        run.at,
-                        format!("the run `{}` has no rows to list", block.name.value),
-                    )
-                    .help("add `rows: every ...` to the run"),
-                );
-            }
         }
     }
     for chart in &study.blocks.charts {

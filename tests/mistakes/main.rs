@@ -8,15 +8,15 @@
 use std::fs;
 use std::path::{Path, PathBuf};
 
+use halfstep::cli::pipeline;
 use halfstep::fault::{Faults, Sources, show};
-use halfstep::study;
 
 /// All faults of a text, as `CODE LINE:COLUMN` lines and as they are shown.
 fn faults_of(name: &str, text: &str) -> (Vec<String>, String) {
     let mut sources = Sources::default();
     let file = sources.add(name, text);
     let mut faults = Faults::new();
-    study::read(&sources, file, &mut faults);
+    pipeline::check(&sources, file, None, &mut faults);
     let lines = faults
         .sorted()
         .iter()
@@ -51,7 +51,7 @@ fn renew(path: &Path, text: &str) -> bool {
 #[test]
 fn every_wrong_study_gives_its_fault_at_its_place() {
     let paths = studies();
-    assert!(paths.len() >= 25);
+    assert!(paths.len() >= 70);
     let mut wrong = Vec::new();
     for path in paths {
         let name = path.file_name().unwrap().to_string_lossy().into_owned();
