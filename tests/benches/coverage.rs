@@ -28,15 +28,24 @@ use rayon::prelude::*;
 
 fn main() {
     let problems = std::env::args().skip(1).find_map(|argument| argument.parse().ok()).unwrap_or(2200_u64);
-    let lists: Vec<Vec<Case>> = (0..problems).into_par_iter().map(cases).collect();
-    let cases: Vec<Case> = lists.into_iter().flatten().collect();
+    let both: Vec<(Vec<Case>, Vec<Case>)> = (0..problems).into_par_iter().map(cases).collect();
+    let (quantities, rows): (Vec<_>, Vec<_>) = both.into_iter().unzip();
+    let quantities: Vec<Case> = quantities.into_iter().flatten().collect();
+    let rows: Vec<Case> = rows.into_iter().flatten().collect();
+    println!("quantities:");
+    table(&quantities, problems);
+    println!("\nrows:");
+    table(&rows, problems);
+}
+
+fn table(cases: &[Case], problems: u64) {
     println!("{} numbers from {problems} problems", cases.len());
     println!(
         "| scheme | grade | numbers | bound holds | tightness: median | 90 % | worst true error over bound |"
     );
     println!("| --- | --- | ---: | ---: | ---: | ---: | ---: |");
     let mut groups: BTreeMap<(&str, &str), Vec<&Case>> = BTreeMap::new();
-    for case in &cases {
+    for case in cases {
         let grade = if case.floor && case.grade == Grade::Converged {
             "converged, at rounding"
         } else {

@@ -229,8 +229,11 @@ impl Problem {
     /// The study that integrates the problem: `control` is a line such as `step: 0.1`.
     pub fn study(&self, scheme: &str, control: &str) -> String {
         let mut text = format!(
-            "---\nstudy: {}\n---\n\n```model m\n{}\n```\n\n```run r\nmodel: m\nscheme: {scheme}\n{control}\nuntil: {}\nquantities:\n",
-            self.family, self.model, self.until
+            "---\nstudy: {}\n---\n\n```model m\n{}\n```\n\n```run r\nmodel: m\nscheme: {scheme}\n{control}\nuntil: {}\nrows: every {:.5}\nquantities:\n",
+            self.family,
+            self.model,
+            self.until,
+            self.until / 23.7
         );
         for (i, quantity) in self.quantities.iter().enumerate() {
             text.push_str(&format!("  q{i}: \"{quantity}\"\n"));

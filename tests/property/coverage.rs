@@ -7,7 +7,14 @@ use crate::common::coverage::{Case, cases};
 #[test]
 fn converged_and_corroborated_bounds_hold_and_are_tight() {
     // Other problems than the first ones of the bench.
-    let cases: Vec<Case> = (50_000..50_600).flat_map(cases).collect();
+    let both: Vec<(Vec<Case>, Vec<Case>)> = (50_000..50_600).map(cases).collect();
+    let (quantities, rows): (Vec<_>, Vec<_>) = both.into_iter().unzip();
+    hold(&quantities.into_iter().flatten().collect::<Vec<_>>());
+    hold(&rows.into_iter().flatten().collect::<Vec<_>>());
+}
+
+/// At least 99.5 % of the good bounds hold, none is off by more than a factor of 2, half are tighter than 2.
+fn hold(cases: &[Case]) {
     let good: Vec<&Case> = cases.iter().filter(|case| case.grade <= Grade::Converged).collect();
     assert!(good.len() > 2_000, "{}", good.len());
     let broken: Vec<&&Case> = good.iter().filter(|case| case.ratio > 1.0).collect();
