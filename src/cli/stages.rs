@@ -186,6 +186,7 @@ pub fn step_control(run: &RunOutcome) -> Option<StepControl> {
         ("safety", control::SAFETY),
         ("smallest factor", control::SMALLEST_FACTOR),
         ("largest factor", control::LARGEST_FACTOR),
+        ("largest step, share of the span", control::LARGEST_SHARE),
         ("proportional", control::PROPORTIONAL),
         ("integral", control::INTEGRAL),
     ];

@@ -10,7 +10,7 @@ use super::system::{System, Values};
 use super::{Accepted, Flip, Observer, Rejections};
 use crate::arithmetic::{larger, root, smaller};
 use crate::plan::{Nominal, RunPlan};
-use crate::scheme::control::Controller;
+use crate::scheme::control::{Controller, LARGEST_SHARE};
 use crate::scheme::dense_output::{Piece, Room};
 use crate::scheme::rates::{NotFinite, checked};
 use crate::scheme::step::Stepper;
@@ -264,6 +264,7 @@ impl<'p> Runner<'p> {
         let mut h = self.first_step(lower, tolerance, scales);
         while self.t < until {
             let interval = points.len() as u64 - 1;
+            h = smaller(h, LARGEST_SHARE * (until - self.plan.from));
             let reach = until - self.t;
             // Two steps of equal length rather than a full one and a sliver.
             let h_now = if h >= reach {

@@ -8,6 +8,9 @@ pub const SAFETY: f64 = 0.9;
 pub const SMALLEST_FACTOR: f64 = 0.2;
 /// A step grows by this factor at most.
 pub const LARGEST_FACTOR: f64 = 5.0;
+/// The largest step as a share of the span: rates that are quiet for long must not lull a run over a short pulse.
+/// Common practice, no source.
+pub const LARGEST_SHARE: f64 = 1.0 / 50.0;
 /// Weight of the present error, over the order of the error estimate plus one.
 pub const PROPORTIONAL: f64 = 0.7;
 /// Weight of the last accepted error, likewise.

@@ -281,3 +281,33 @@ fn hidden_kinks_and_roots_break_no_good_bound() {
     }
     assert!(broken.is_empty(), "{} of {good}:\n{}", broken.len(), broken.join("\n"));
 }
+
+/// A pulse after a long quiet spell, of nothing before and after it: an adaptive run must not step over it unawares.
+/// The narrowest is 1/250 of the span wide.
+#[test]
+fn a_pulse_after_a_quiet_spell_is_not_stepped_over() {
+    let mut random = Random::new(31);
+    let (mut count, mut broken) = (0, Vec::new());
+    for scheme in all().iter().filter(|scheme| scheme.embedded_order.is_some()) {
+        for _ in 0..80 {
+            let (a, width) = (random.between(1.0, 9.0), random.between(0.02, 0.3));
+            for tolerance in ["1e-3", "1e-5"] {
+                let model = format!("states: {{x: 0}}\nrates:\n  x: \"max(0, 1-((t-{a})/{width})^2)\"");
+                let text = study(&model, scheme.key, 0.1, 10.0)
+                    .replace("step: 0.1", &format!("tolerance: {tolerance}"));
+                let (_, outcome) = evaluate("pulse.md", &text).unwrap();
+                let quantity = &outcome.runs[0].quantities[0];
+                // The area of a parabola.
+                let error = (quantity.value.unwrap() - 4.0 / 3.0 * width).abs();
+                count += 1;
+                if quantity.grade < Grade::Indicated && error > quantity.bound.unwrap() {
+                    broken.push(format!(
+                        "{} {tolerance} at {a} width {width}: error {error:e} {quantity:?}",
+                        scheme.key
+                    ));
+                }
+            }
+        }
+    }
+    assert!(broken.is_empty(), "{} of {count}:\n{}", broken.len(), broken.join("\n"));
+}
