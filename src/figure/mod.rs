@@ -1,6 +1,6 @@
-//! Charts as SVG, tables as data, numbers as text.
+//! Charts as SVG, numbers as text.
 //!
-//! Enters: plain numbers and titles. Leaves: strings and plain data. Of runs this stage knows the thinning of
+//! Enters: plain numbers and titles. Leaves: strings. Of runs this stage knows the thinning of
 //! curves alone; it holds no HTML.
 
 pub mod axis;
@@ -15,6 +15,5 @@ mod labels;
 mod samples;
 pub mod stability;
 mod surface;
-pub mod table;
 mod ticks;
 mod width;
